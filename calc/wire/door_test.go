@@ -1,0 +1,47 @@
+package wire
+
+import "testing"
+
+func TestReckonRefusesWhatItDoesNotKnow(t *testing.T) {
+	for _, row := range []struct{ name, op, in, code, field string }{
+		{"unknown operation", "polarization.gain", `{}`, "unknown_operation", ""},
+		{"not JSON", "polarization.loss", `{`, "malformed", ""},
+		{"trailing text", "polarization.loss", `{} {}`, "malformed", ""},
+		{"name twice", "polarization.loss", `{"near":{"slant_deg":1,"slant_deg":2},"far":{"slant_deg":0}}`, "malformed", "near.slant_deg"},
+		{"unknown field", "polarization.loss", `{"near":{"slant_deg":0,"tilt":1},"far":{"slant_deg":0}}`, "unknown_field", "near.tilt"},
+		{"missing field", "polarization.loss", `{"near":{"slant_deg":0}}`, "missing_field", "far"},
+		{"text for a number", "polarization.loss", `{"near":{"slant_deg":"NaN"},"far":{"slant_deg":0}}`, "wrong_type", "near.slant_deg"},
+		{"NaN", "polarization.loss", `{"near":{"slant_deg":NaN},"far":{"slant_deg":0}}`, "not_finite", "near.slant_deg"},
+		{"too large to be a number", "polarization.loss", `{"near":{"slant_deg":1e999},"far":{"slant_deg":0}}`, "not_finite", "near.slant_deg"},
+		{"skew of 400 degrees", "polarization.loss", `{"near":{"slant_deg":0,"skew_deg":400},"far":{"slant_deg":0}}`, "out_of_range", "near.skew_deg"},
+		{"hand without axial ratio", "polarization.loss", `{"near":{"slant_deg":0,"hand":"left"},"far":{"slant_deg":0}}`, "impossible", "near.hand"},
+		{"a list", "polarization.loss", `[]`, "wrong_type", ""},
+	} {
+		t.Run(row.name, func(t *testing.T) {
+			out, p := Reckon(row.op, []byte(row.in))
+			if p == nil {
+				t.Fatalf("answered %s", out)
+			}
+			if p.Code != row.code || p.Field != row.field {
+				t.Errorf("got %s at %q (%s), want %s at %q", p.Code, p.Field, p.Message, row.code, row.field)
+			}
+			if out != nil {
+				t.Errorf("a problem came with an answer: %s", out)
+			}
+		})
+	}
+}
+
+func TestAPanicBecomesAProblem(t *testing.T) {
+	if text("x") != "x" {
+		t.Fatal("text lost the panic's words")
+	}
+	out, p := Reckon("polarization.loss", []byte(`{"near":{"slant_deg":45},"far":{"slant_deg":-45}}`))
+	if p != nil {
+		t.Fatal(p)
+	}
+	const want = `{"factor":1,"loss_db":0,"blind":false,"method":{"version":"1.0.0","sources":["IEEE Std 145","Balanis, Antenna Theory, ch. 2"]}}`
+	if string(out) != want {
+		t.Errorf("got %s\nwant %s", out, want)
+	}
+}

@@ -1,0 +1,201 @@
+// The log on this phone. An entry is made once, as one JSON text; that text is kept, hashed and sent byte for byte.
+import { uuidv7 } from 'uuidv7';
+import type { Bodies, Counts, Entry, EntryOf, Kind, LoggedEntry } from '../types.ts';
+import { changed, withDatabase } from './database.ts';
+import type { Database, DeviceRow, EntryRow } from './database.ts';
+import { sha256 } from './hash.ts';
+import { localTime } from './time.ts';
+
+export class NotSignedIn extends Error {
+  constructor() {
+    super('nobody has signed in on this phone yet, so an entry would have no author');
+    this.name = 'NotSignedIn';
+  }
+}
+
+export interface AddOptions {
+  /** A draft that this entry makes needless: it goes in the same transaction. */
+  dropsDraft?: string;
+}
+
+/** Another window may write between our look at the head and our transaction; then the entry is made anew. */
+const ATTEMPTS = 20;
+
+let last: Promise<unknown> = Promise.resolve();
+
+/**
+ * Makes an entry. Resolves when it is on disk: only then may "saved" be shown. Entries of one page keep the order of
+ * the calls.
+ */
+export function addEntry<K extends Kind>(
+  kind: K,
+  job: string | null,
+  mount: string | null,
+  body: Bodies[K],
+  options: AddOptions = {},
+): Promise<EntryOf<K>> {
+  const now = new Date();
+  const mono = Math.round(performance.now());
+  const made = last.then(() => make(kind, job, mount, body, options, now, mono));
+  last = made.catch(() => undefined); // one failure must not hold up the next entry
+  return made;
+}
+
+async function make<K extends Kind>(
+  kind: K,
+  job: string | null,
+  mount: string | null,
+  body: Bodies[K],
+  options: AddOptions,
+  now: Date,
+  mono: number,
+): Promise<EntryOf<K>> {
+  for (let attempt = 0; attempt < ATTEMPTS; attempt++) {
+    const entry = await withDatabase(async (db) => {
+      const session = (await db.get('settings', 'session')) as { user: { id: string } } | undefined;
+      if (!session) throw new NotSignedIn();
+      const device = await thisDevice(db);
+      const draft: EntryOf<K> = {
+        id: uuidv7(),
+        device: device.id,
+        device_seq: device.next_seq,
+        prev: device.head,
+        job,
+        mount,
+        kind,
+        schema: 1,
+        at: localTime(now),
+        mono_ms: mono,
+        author: session.user.id,
+        app: release(),
+        body,
+      };
+      const raw = JSON.stringify(draft);
+      // Awaiting the hash would end an open transaction, so it is made before, and the transaction checks that the
+      // head is still the one that it was made for.
+      const hash = await sha256(raw);
+      return (await append(db, device, draft, raw, hash, options)) ? draft : null;
+    });
+    if (entry) {
+      changed();
+      return entry;
+    }
+  }
+  throw new Error('other windows kept writing; the entry could not be placed');
+}
+
+/** Entry, outbox and head of the device in one strict transaction. False: another window was first. */
+async function append(
+  db: Database,
+  seen: DeviceRow,
+  entry: { id: string; job: string | null },
+  raw: string,
+  hash: string,
+  options: AddOptions,
+): Promise<boolean> {
+  const tx = db.transaction(['entries', 'outbox', 'settings', 'drafts'], 'readwrite', { durability: 'strict' });
+  const device = (await tx.objectStore('settings').get('device')) as DeviceRow;
+  if (device.id !== seen.id || device.next_seq !== seen.next_seq || device.head !== seen.head) {
+    tx.abort();
+    await tx.done.catch(() => undefined);
+    return false;
+  }
+  // Not awaited one by one: a failure of any of them aborts the transaction, and done tells.
+  const requests: Promise<unknown>[] = [
+    tx.objectStore('entries').add({
+      id: entry.id,
+      device: device.id,
+      device_seq: device.next_seq,
+      job: entry.job ?? '',
+      raw,
+      hash,
+      own: 1,
+      whereabouts: 'waiting',
+      seq: null,
+      reason: null,
+      author_name: null,
+      received_at: null,
+    }),
+    tx.objectStore('outbox').add({ device_seq: device.next_seq, id: entry.id }),
+    tx.objectStore('settings').put({ ...device, next_seq: device.next_seq + 1, head: hash }, 'device'),
+  ];
+  if (options.dropsDraft !== undefined) requests.push(tx.objectStore('drafts').delete(options.dropsDraft));
+  await Promise.all([...requests, tx.done]);
+  return true;
+}
+
+/** This browser's identity in the log, made at its first entry. Two windows at once: one wins, both see the same. */
+async function thisDevice(db: Database): Promise<DeviceRow> {
+  const tx = db.transaction('settings', 'readwrite', { durability: 'strict' });
+  let device = (await tx.store.get('device')) as DeviceRow | undefined;
+  if (!device) {
+    device = { id: crypto.randomUUID(), next_seq: 1, head: '' };
+    await tx.store.put(device, 'device');
+  }
+  await tx.done;
+  return device;
+}
+
+/** Which build of the page wrote the entry; mkstatic puts it into the page. */
+function release(): string {
+  return (typeof document !== 'undefined' && document.documentElement.dataset['release']) || 'unbuilt';
+}
+
+/**
+ * The entries of a job on this phone, own and others': first what the server has, in its order, then what waits here,
+ * in the order in which it was made.
+ */
+export async function entriesOf(job: string): Promise<LoggedEntry[]> {
+  const rows = await withDatabase((db) => db.getAllFromIndex('entries', 'by job', job));
+  return rows.sort(inOrder).map(logged);
+}
+
+/** Every entry that was made on this phone, in order: for the person's own look, and for export. */
+export async function ownEntries(): Promise<LoggedEntry[]> {
+  const rows = await withDatabase(async (db) => {
+    const device = (await db.get('settings', 'device')) as DeviceRow | undefined;
+    if (!device) return [];
+    return db.getAllFromIndex('entries', 'by device', IDBKeyRange.bound([device.id, 0], [device.id, Infinity]));
+  });
+  return rows.map(logged);
+}
+
+function inOrder(a: EntryRow, b: EntryRow): number {
+  if (a.seq !== null && b.seq !== null) return a.seq - b.seq;
+  if (a.seq !== null) return -1;
+  if (b.seq !== null) return 1;
+  return a.device_seq - b.device_seq;
+}
+
+function logged(row: EntryRow): LoggedEntry {
+  return {
+    entry: JSON.parse(row.raw) as Entry,
+    raw: row.raw,
+    hash: row.hash,
+    own: row.own === 1,
+    whereabouts: row.whereabouts,
+    seq: row.seq,
+    reason: row.reason,
+    author_name: row.author_name,
+    received_at: row.received_at,
+  };
+}
+
+/** How many own entries wait, are safe on the server, need a person. */
+export function counts(): Promise<Counts> {
+  return withDatabase(async (db) => {
+    const index = db.transaction('entries').store.index('by whereabouts');
+    const [waiting, safe, needsPerson] = await Promise.all([
+      index.count([1, 'waiting']),
+      index.count([1, 'safe']),
+      index.count([1, 'needs person']),
+    ]);
+    return { waiting, safe, needsPerson };
+  });
+}
+
+/** Own entries that the server set apart, with its reasons. */
+export async function needingPerson(): Promise<LoggedEntry[]> {
+  const rows = await withDatabase((db) => db.getAllFromIndex('entries', 'by whereabouts', [1, 'needs person']));
+  return rows.map(logged);
+}

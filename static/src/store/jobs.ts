@@ -1,0 +1,121 @@
+// The jobs that this phone took along, and the stage of each with its own waiting entries counted in.
+import type { Entry, JobSummary, Kind, PhoneJob, Plan, Stage } from '../types.ts';
+import { withDatabase } from './database.ts';
+import type { EntryRow, JobRow } from './database.ts';
+
+/** The jobs on this phone: those of today and later first, then by site. */
+export async function jobs(): Promise<PhoneJob[]> {
+  const [rows, waiting] = await withDatabase(async (db) => {
+    const tx = db.transaction(['jobs', 'entries']);
+    return Promise.all([
+      tx.objectStore('jobs').getAll(),
+      tx.objectStore('entries').index('by whereabouts').getAll([1, 'waiting']),
+    ]);
+  });
+  return rows.map((row) => phoneJob(row, waiting)).sort(byVisit);
+}
+
+export async function job(id: string): Promise<PhoneJob | null> {
+  const [row, waiting] = await withDatabase(async (db) => {
+    const tx = db.transaction(['jobs', 'entries']);
+    return Promise.all([
+      tx.objectStore('jobs').get(id),
+      tx.objectStore('entries').index('by whereabouts').getAll([1, 'waiting']),
+    ]);
+  });
+  return row ? phoneJob(row, waiting) : null;
+}
+
+function phoneJob(row: JobRow, allWaiting: EntryRow[]): PhoneJob {
+  const waiting = allWaiting.filter((entry) => entry.job === row.id).sort((a, b) => a.device_seq - b.device_seq);
+  return {
+    summary: row.summary,
+    plan: row.plan,
+    stage: stageAfter(
+      row.summary.stage,
+      waiting.map((entry) => (JSON.parse(entry.raw) as Entry).kind),
+    ),
+    remark: row.summary.remark,
+    waiting: waiting.length,
+    pulledAt: row.pulled_at,
+  };
+}
+
+/** The stage that follows from the server's by entries that it has not seen yet. The desk's decisions come from it only. */
+export function stageAfter(stage: Stage, kinds: readonly Kind[]): Stage {
+  for (const kind of kinds) {
+    if (stage === 'signed off') break; // what comes later is set apart by the server, and a person looks at it
+    if (kind === 'job.handed_in') stage = 'handed in';
+    else if (work.has(kind) && (stage === 'issued' || stage === 'sent back')) stage = 'under way';
+  }
+  return stage;
+}
+
+const work: ReadonlySet<Kind> = new Set<Kind>(['caution.confirmed', 'reading.taken']);
+
+function byVisit(a: PhoneJob, b: PhoneJob): number {
+  const day = (job: PhoneJob) => job.summary.visit_on ?? '9999';
+  return day(a).localeCompare(day(b)) || a.summary.site.localeCompare(b.summary.site) || a.summary.id.localeCompare(b.summary.id);
+}
+
+/** What the phone holds of each job, to ask the server only for those that moved on. */
+export async function heldHeads(): Promise<Map<string, number>> {
+  const rows = await withDatabase((db) => db.getAll('jobs'));
+  return new Map(rows.map((row) => [row.id, row.summary.head_seq]));
+}
+
+export interface PulledEntry {
+  id: string;
+  device: string;
+  device_seq: number;
+  seq: number;
+  raw: string;
+  hash: string;
+  author_name: string | null;
+  received_at: string | null;
+}
+
+/** Puts a job as the server has it beside what was made here. Own entries that come back are thereby safe. */
+export async function keepPulled(summary: JobSummary, plan: Plan, entries: PulledEntry[], now: string): Promise<void> {
+  await withDatabase(async (db) => {
+    const tx = db.transaction(['jobs', 'entries', 'outbox'], 'readwrite', { durability: 'strict' });
+    const all = tx.objectStore('entries');
+    await tx.objectStore('jobs').put({ id: summary.id, summary, plan, pulled_at: now });
+    for (const pulled of entries) {
+      const held = await all.get(pulled.id);
+      if (held && held.hash !== pulled.hash) continue; // two texts under one id: the server shows it to a person; ours stays
+      await all.put({
+        id: pulled.id,
+        device: pulled.device,
+        device_seq: pulled.device_seq,
+        job: summary.id,
+        raw: pulled.raw,
+        hash: pulled.hash,
+        own: held?.own ?? 0,
+        whereabouts: 'safe',
+        seq: pulled.seq,
+        reason: null,
+        author_name: pulled.author_name,
+        received_at: pulled.received_at,
+      });
+      if (held?.own === 1) await tx.objectStore('outbox').delete(held.device_seq);
+    }
+    await tx.done;
+  });
+}
+
+/** A job that is no longer the crew's leaves the list; entries made here stay, whatever the server says. */
+export async function forgetJobs(kept: ReadonlySet<string>): Promise<boolean> {
+  return withDatabase(async (db) => {
+    const tx = db.transaction(['jobs', 'outbox', 'entries'], 'readwrite', { durability: 'strict' });
+    const waiting = new Set((await tx.objectStore('entries').index('by whereabouts').getAll([1, 'waiting'])).map((e) => e.job));
+    let gone = false;
+    for (const id of await tx.objectStore('jobs').getAllKeys()) {
+      if (kept.has(id) || waiting.has(id)) continue;
+      await tx.objectStore('jobs').delete(id);
+      gone = true;
+    }
+    await tx.done;
+    return gone;
+  });
+}

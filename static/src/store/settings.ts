@@ -1,0 +1,21 @@
+// Small things by name: theme, language, who signed in last.
+import { changed, withDatabase } from './database.ts';
+import type { Settings } from './database.ts';
+
+export function getSetting<K extends keyof Settings>(name: K): Promise<Settings[K] | undefined> {
+  return withDatabase(async (db) => (await db.get('settings', name as string)) as Settings[K] | undefined);
+}
+
+export async function setSetting<K extends keyof Settings>(name: K, value: Settings[K]): Promise<void> {
+  await withDatabase(async (db) => {
+    const tx = db.transaction('settings', 'readwrite', { durability: 'strict' });
+    void tx.store.put(value, name as string);
+    await tx.done;
+  });
+  changed();
+}
+
+export async function dropSetting(name: string): Promise<void> {
+  await withDatabase((db) => db.delete('settings', name));
+  changed();
+}

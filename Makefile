@@ -55,6 +55,10 @@ test-page:
 tools:
 	.ci/tools
 
+## vuln: known vulnerabilities in what we call
+vuln:
+	.ci/vuln
+
 clean:
 	rm -rf bin $(ARTEFACTS) static/node_modules
 	find static/gen -mindepth 1 ! -name README.md -delete

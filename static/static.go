@@ -14,7 +14,7 @@ import (
 
 // gen holds nothing but its README until `make static` has run: the tree must compile before that.
 //
-//go:embed sw.js gen
+//go:embed gen
 var built embed.FS
 
 // contentTypes is the project's own table: the tables of machines differ, and a wasm or a script under the wrong type
@@ -48,7 +48,7 @@ type Files struct {
 	byPath map[string]*File
 }
 
-// Load reads what was embedded. Before `make static` it holds only /sw.js; Built tells.
+// Load reads what was embedded. Before `make static` there is nothing; Built tells.
 func Load() (*Files, error) {
 	files := &Files{byPath: map[string]*File{}}
 	err := fs.WalkDir(built, ".", func(name string, entry fs.DirEntry, err error) error {
@@ -112,8 +112,8 @@ func urlPath(name string) string {
 		return "/"
 	case "gen/desk.html":
 		return "/desk"
-	case "gen/manifest.json":
-		return "/manifest.json"
+	case "gen/manifest.json", "gen/sw.js":
+		return "/" + path.Base(name)
 	}
 	return "/" + name
 }

@@ -13,9 +13,9 @@ import (
 
 // scripts is what bundling gave.
 type scripts struct {
-	names      map[string]string // "phone.js" to "/gen/phone-….js", for the templates
-	phoneFiles []string          // every file in gen that the phone page reaches, with what those reach
-	preload    map[string][]string
+	names   map[string]string   // "phone.js" to "/gen/phone-….js", for the templates
+	files   map[string][]string // by page, every file in gen that it reaches, with what those reach
+	preload map[string][]string // by page, those that it needs at once
 }
 
 // browsers states whom the bundle is written for: nothing older has IndexedDB with durability, Web Locks and wasm
@@ -56,7 +56,7 @@ func bundle(static string, chain toolchain, gen *folder, wasmURL string) (*scrip
 		return nil, err
 	}
 
-	s := &scripts{names: map[string]string{}, preload: map[string][]string{}}
+	s := &scripts{names: map[string]string{}, files: map[string][]string{}, preload: map[string][]string{}}
 	for _, page := range []string{"phone", "desk"} {
 		entry := pages.entries["src/"+page+"/main.tsx"]
 		style := pages.outputs[entry].css
@@ -72,9 +72,7 @@ func bundle(static string, chain toolchain, gen *folder, wasmURL string) (*scrip
 				s.preload[page] = append(s.preload[page], name)
 			}
 		}
-		if page == "phone" {
-			s.phoneFiles = append(reached, workerName, strings.TrimPrefix(wasmURL, "/gen/"))
-		}
+		s.files[page] = append(reached, workerName, strings.TrimPrefix(wasmURL, "/gen/"))
 	}
 	return s, nil
 }

@@ -94,7 +94,7 @@ func (g *folder) sorted() []*file {
 
 // addPrecache writes the list of what makes the phone page whole, and a version that changes with any byte of it.
 func (g *folder) addPrecache(s *scripts) {
-	for _, name := range s.phoneFiles {
+	for _, name := range s.files["phone"] {
 		g.files[name].phone = true
 	}
 	version := sha256.New()
@@ -115,7 +115,7 @@ func (g *folder) addPrecache(s *scripts) {
 	}
 	text := fmt.Sprintf("self.precache = {\n  version: %q,\n  files: [\n%s  ],\n};\n",
 		base32.StdEncoding.EncodeToString(version.Sum(nil))[:16], list.String())
-	g.put("precache.js", []byte(text), partRest)
+	g.put("precache.js", []byte(text), partScript)
 }
 
 // write empties the folder but for its README and writes every file with its compressed forms.

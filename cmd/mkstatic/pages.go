@@ -10,30 +10,27 @@ import (
 	"strings"
 )
 
-// addPages fills the shells of the two pages and the manifest with the hashed names. The release is a hash of all that
-// the pages load: an entry carries it, so a reading can be traced to the very code that took it.
+// addPages fills the shells of the two pages and the manifest with the hashed names, and adds the service worker as it
+// stands. The release is a hash of all that a page loads: an entry carries it, so a reading can be traced to the very
+// code that took it.
 func addPages(static string, gen *folder, names map[string]string, s *scripts) error {
-	release := sha256.New()
-	for _, f := range gen.sorted() {
-		fmt.Fprintf(release, "%s %x\n", f.name, sha256.Sum256(f.content))
-	}
-	names["release"] = base32.StdEncoding.EncodeToString(release.Sum(nil))[:12]
-
 	for _, page := range []struct {
-		name    string
-		preload string
-		part    part
-		phone   bool
+		name  string
+		of    string
+		part  part
+		phone bool
 	}{
 		{"index.html", "phone", partPage, true},
 		{"desk.html", "desk", partPage, false},
 		{"manifest.json", "", partPage, true},
+		{"sw.js", "", partScript, false}, // the browser keeps it by its own rules
 	} {
 		text, err := os.ReadFile(filepath.Join(static, page.name))
 		if err != nil {
 			return err
 		}
-		filled := strings.ReplaceAll(string(text), "{{preload}}", preloads(s.preload[page.preload]))
+		filled := strings.ReplaceAll(string(text), "{{preload}}", preloads(s.preload[page.of]))
+		filled = strings.ReplaceAll(filled, "{{release}}", release(s.files[page.of]))
 		for name, value := range names {
 			filled = strings.ReplaceAll(filled, "{{"+name+"}}", value)
 		}
@@ -43,6 +40,12 @@ func addPages(static string, gen *folder, names map[string]string, s *scripts) e
 		gen.put(page.name, []byte(filled), page.part).phone = page.phone
 	}
 	return nil
+}
+
+// release names what a page is made of; the file names hold the hashes of the contents.
+func release(files []string) string {
+	sum := sha256.Sum256([]byte(strings.Join(files, "\n")))
+	return base32.StdEncoding.EncodeToString(sum[:])[:12]
 }
 
 func preloads(files []string) string {

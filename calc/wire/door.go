@@ -32,6 +32,7 @@ type operation struct {
 func operations() []operation {
 	return slices.Concat(
 		polarOperations(),
+		spacingOperations(),
 		mountOperations(),
 	)
 }
@@ -49,13 +50,17 @@ func Operations() []string {
 // Reckon runs one operation. The answer is a JSON object that holds finite
 // numbers only; a nil problem comes with an answer and a problem with none.
 // Reckon never panics: a fault of ours comes back with the code "internal".
-func Reckon(op string, in []byte) (out []byte, problem *Problem) {
+func Reckon(op string, in []byte) ([]byte, *Problem) {
+	return reckon(operations(), op, in)
+}
+
+func reckon(table []operation, op string, in []byte) (out []byte, problem *Problem) {
 	defer func() {
 		if fault := recover(); fault != nil {
 			out, problem = nil, &Problem{Code: codec.Internal, Message: "the computation failed (" + text(fault) + "); please report this input"}
 		}
 	}()
-	for _, o := range operations() {
+	for _, o := range table {
 		if o.name != op {
 			continue
 		}

@@ -1,6 +1,11 @@
 package wire
 
-import "testing"
+import (
+	"math"
+	"testing"
+
+	"crossplumb/calc/codec"
+)
 
 func TestReckonRefusesWhatItDoesNotKnow(t *testing.T) {
 	for _, row := range []struct{ name, op, in, code, field string }{
@@ -32,16 +37,36 @@ func TestReckonRefusesWhatItDoesNotKnow(t *testing.T) {
 	}
 }
 
-func TestAPanicBecomesAProblem(t *testing.T) {
-	if text("x") != "x" {
-		t.Fatal("text lost the panic's words")
+func TestAFaultOfOursBecomesAProblem(t *testing.T) {
+	var index []int
+	table := []operation{
+		{"panics with text", func(*codec.Value) (answer, *Problem) { panic("broken contract") }, nil},
+		{"panics at run time", func(*codec.Value) (answer, *Problem) { return codec.Obj(codec.M("x", codec.Int(index[3]))), nil }, nil},
+		{"not finite", func(*codec.Value) (answer, *Problem) { return codec.Obj(codec.M("x", codec.Num(math.NaN()))), nil }, nil},
+		{"infinite, deep", func(*codec.Value) (answer, *Problem) {
+			return codec.Obj(codec.M("x", codec.Seq(codec.Obj(codec.M("y", codec.Num(math.Inf(1))))))), nil
+		}, nil},
 	}
+	for _, o := range table {
+		out, p := reckon(table, o.name, []byte(`{}`))
+		if p == nil || p.Code != codec.Internal || out != nil {
+			t.Errorf("%s: got %s and %v, want the code internal and no answer", o.name, out, p)
+		}
+	}
+}
+
+func TestEveryAnswerCarriesItsMethod(t *testing.T) {
 	out, p := Reckon("polarization.loss", []byte(`{"near":{"slant_deg":45},"far":{"slant_deg":-45}}`))
 	if p != nil {
 		t.Fatal(p)
 	}
-	const want = `{"factor":1,"loss_db":0,"blind":false,"method":{"version":"1.0.0","sources":["IEEE Std 145","Balanis, Antenna Theory, ch. 2"]}}`
+	const want = `{"factor":1,"loss_db":0,"blind":false,"method":{"version":"` + Version + `","sources":["IEEE Std 145","Balanis, Antenna Theory, ch. 2"]}}`
 	if string(out) != want {
 		t.Errorf("got %s\nwant %s", out, want)
+	}
+	for _, o := range operations() {
+		if len(o.sources) == 0 {
+			t.Errorf("%s names no source", o.name)
+		}
 	}
 }

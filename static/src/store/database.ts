@@ -146,6 +146,35 @@ export async function withDatabase<T>(run: (db: Database) => Promise<T>): Promis
   }
 }
 
+/**
+ * One transaction that is either wholly on disk when this resolves, or has left nothing behind. Strict: the answer comes
+ * after the disk has it, not only the system's cache. Without the abort, what was put before an exception would stay.
+ * `run` must await nothing but this transaction: anything else ends it.
+ */
+export function write<Names extends StoreNames<Schema>[], T>(
+  stores: Names,
+  run: (tx: IDBPTransaction<Schema, Names, 'readwrite'>) => Promise<T>,
+): Promise<T> {
+  return withDatabase(async (db) => {
+    const tx = db.transaction(stores, 'readwrite', { durability: 'strict' });
+    const done = tx.done;
+    done.catch(() => undefined); // told below
+    try {
+      const result = await run(tx);
+      await done;
+      return result;
+    } catch (error) {
+      try {
+        tx.abort();
+      } catch {
+        // it had ended by itself
+      }
+      await done.catch(() => undefined);
+      throw error;
+    }
+  });
+}
+
 // ---- Telling of changes ------------------------------------------------------------------------------------------
 
 const listeners = new Set<() => void>();

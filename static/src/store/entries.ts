@@ -1,9 +1,10 @@
 // The log on this phone. An entry is made once, as one JSON text; that text is kept, hashed and sent byte for byte.
 import { uuidv7 } from 'uuidv7';
 import type { Bodies, Counts, Entry, EntryOf, Kind, LoggedEntry } from '../types.ts';
-import { changed, withDatabase } from './database.ts';
-import type { Database, DeviceRow, EntryRow } from './database.ts';
+import { changed, withDatabase, write } from './database.ts';
+import type { DeviceRow, EntryRow } from './database.ts';
 import { sha256 } from './hash.ts';
+import { getSetting } from './settings.ts';
 import { localTime } from './time.ts';
 
 export class NotSignedIn extends Error {
@@ -51,32 +52,29 @@ async function make<K extends Kind>(
   mono: number,
 ): Promise<EntryOf<K>> {
   for (let attempt = 0; attempt < ATTEMPTS; attempt++) {
-    const entry = await withDatabase(async (db) => {
-      const session = (await db.get('settings', 'session')) as { user: { id: string } } | undefined;
-      if (!session) throw new NotSignedIn();
-      const device = await thisDevice(db);
-      const draft: EntryOf<K> = {
-        id: uuidv7(),
-        device: device.id,
-        device_seq: device.next_seq,
-        prev: device.head,
-        job,
-        mount,
-        kind,
-        schema: 1,
-        at: localTime(now),
-        mono_ms: mono,
-        author: session.user.id,
-        app: release(),
-        body,
-      };
-      const raw = JSON.stringify(draft);
-      // Awaiting the hash would end an open transaction, so it is made before, and the transaction checks that the
-      // head is still the one that it was made for.
-      const hash = await sha256(raw);
-      return (await append(db, device, draft, raw, hash, options)) ? draft : null;
-    });
-    if (entry) {
+    const session = await getSetting('session');
+    if (!session) throw new NotSignedIn();
+    const device = await thisDevice();
+    const entry: EntryOf<K> = {
+      id: uuidv7(),
+      device: device.id,
+      device_seq: device.next_seq,
+      prev: device.head,
+      job,
+      mount,
+      kind,
+      schema: 1,
+      at: localTime(now),
+      mono_ms: mono,
+      author: session.user.id,
+      app: release(),
+      body,
+    };
+    const raw = JSON.stringify(entry);
+    // Awaiting the hash would end an open transaction, so it is made before, and the transaction checks that the head
+    // is still the one that it was made for.
+    const hash = await sha256(raw);
+    if (await append(device, entry, raw, hash, options)) {
       changed();
       return entry;
     }
@@ -84,25 +82,18 @@ async function make<K extends Kind>(
   throw new Error('other windows kept writing; the entry could not be placed');
 }
 
-/** Entry, outbox and head of the device in one strict transaction. False: another window was first. */
-async function append(
-  db: Database,
+/** Entry, outbox and head of the device in one transaction. False: another window was first. */
+function append(
   seen: DeviceRow,
   entry: { id: string; job: string | null },
   raw: string,
   hash: string,
   options: AddOptions,
 ): Promise<boolean> {
-  const tx = db.transaction(['entries', 'outbox', 'settings', 'drafts'], 'readwrite', { durability: 'strict' });
-  const device = (await tx.objectStore('settings').get('device')) as DeviceRow;
-  if (device.id !== seen.id || device.next_seq !== seen.next_seq || device.head !== seen.head) {
-    tx.abort();
-    await tx.done.catch(() => undefined);
-    return false;
-  }
-  // Not awaited one by one: a failure of any of them aborts the transaction, and done tells.
-  const requests: Promise<unknown>[] = [
-    tx.objectStore('entries').add({
+  return write(['entries', 'outbox', 'settings', 'drafts'], async (tx) => {
+    const device = (await tx.objectStore('settings').get('device')) as DeviceRow;
+    if (device.id !== seen.id || device.next_seq !== seen.next_seq || device.head !== seen.head) return false;
+    await tx.objectStore('entries').add({
       id: entry.id,
       device: device.id,
       device_seq: device.next_seq,
@@ -115,25 +106,24 @@ async function append(
       reason: null,
       author_name: null,
       received_at: null,
-    }),
-    tx.objectStore('outbox').add({ device_seq: device.next_seq, id: entry.id }),
-    tx.objectStore('settings').put({ ...device, next_seq: device.next_seq + 1, head: hash }, 'device'),
-  ];
-  if (options.dropsDraft !== undefined) requests.push(tx.objectStore('drafts').delete(options.dropsDraft));
-  await Promise.all([...requests, tx.done]);
-  return true;
+    });
+    await tx.objectStore('outbox').add({ device_seq: device.next_seq, id: entry.id });
+    await tx.objectStore('settings').put({ ...device, next_seq: device.next_seq + 1, head: hash }, 'device');
+    if (options.dropsDraft !== undefined) await tx.objectStore('drafts').delete(options.dropsDraft);
+    return true;
+  });
 }
 
 /** This browser's identity in the log, made at its first entry. Two windows at once: one wins, both see the same. */
-async function thisDevice(db: Database): Promise<DeviceRow> {
-  const tx = db.transaction('settings', 'readwrite', { durability: 'strict' });
-  let device = (await tx.store.get('device')) as DeviceRow | undefined;
-  if (!device) {
-    device = { id: crypto.randomUUID(), next_seq: 1, head: '' };
-    await tx.store.put(device, 'device');
-  }
-  await tx.done;
-  return device;
+function thisDevice(): Promise<DeviceRow> {
+  return write(['settings'], async (tx) => {
+    const settings = tx.objectStore('settings');
+    const held = (await settings.get('device')) as DeviceRow | undefined;
+    if (held) return held;
+    const device = { id: crypto.randomUUID(), next_seq: 1, head: '' };
+    await settings.put(device, 'device');
+    return device;
+  });
 }
 
 /** Which build of the page wrote the entry; mkstatic puts it into the page. */

@@ -1,6 +1,6 @@
 // The jobs that this phone took along, and the stage of each with its own waiting entries counted in.
 import type { Entry, JobSummary, Kind, PhoneJob, Plan, Stage } from '../types.ts';
-import { withDatabase } from './database.ts';
+import { withDatabase, write } from './database.ts';
 import type { EntryRow, JobRow } from './database.ts';
 
 /** The jobs on this phone: those of today and later first, then by site. */
@@ -77,8 +77,7 @@ export interface PulledEntry {
 
 /** Puts a job as the server has it beside what was made here. Own entries that come back are thereby safe. */
 export async function keepPulled(summary: JobSummary, plan: Plan, entries: PulledEntry[], now: string): Promise<void> {
-  await withDatabase(async (db) => {
-    const tx = db.transaction(['jobs', 'entries', 'outbox'], 'readwrite', { durability: 'strict' });
+  await write(['jobs', 'entries', 'outbox'], async (tx) => {
     const all = tx.objectStore('entries');
     await tx.objectStore('jobs').put({ id: summary.id, summary, plan, pulled_at: now });
     for (const pulled of entries) {
@@ -100,14 +99,12 @@ export async function keepPulled(summary: JobSummary, plan: Plan, entries: Pulle
       });
       if (held?.own === 1) await tx.objectStore('outbox').delete(held.device_seq);
     }
-    await tx.done;
   });
 }
 
 /** A job that is no longer the crew's leaves the list; entries made here stay, whatever the server says. */
 export async function forgetJobs(kept: ReadonlySet<string>): Promise<boolean> {
-  return withDatabase(async (db) => {
-    const tx = db.transaction(['jobs', 'outbox', 'entries'], 'readwrite', { durability: 'strict' });
+  return write(['jobs', 'entries'], async (tx) => {
     const waiting = new Set((await tx.objectStore('entries').index('by whereabouts').getAll([1, 'waiting'])).map((e) => e.job));
     let gone = false;
     for (const id of await tx.objectStore('jobs').getAllKeys()) {
@@ -115,7 +112,6 @@ export async function forgetJobs(kept: ReadonlySet<string>): Promise<boolean> {
       await tx.objectStore('jobs').delete(id);
       gone = true;
     }
-    await tx.done;
     return gone;
   });
 }

@@ -1,6 +1,6 @@
 // What waits to go up. An entry leaves the outbox only by an answer of the server about that very entry.
 import type { Whereabouts } from '../types.ts';
-import { changed, withDatabase } from './database.ts';
+import { changed, withDatabase, write } from './database.ts';
 import type { DeviceRow, ServerRow } from './database.ts';
 
 export interface Outgoing {
@@ -42,29 +42,25 @@ export interface Settled {
 /** Takes answered entries out of the outbox and notes what became of them, in one transaction. */
 export async function settle(settled: Settled[]): Promise<void> {
   if (settled.length === 0) return;
-  await withDatabase(async (db) => {
-    const tx = db.transaction(['outbox', 'entries'], 'readwrite', { durability: 'strict' });
+  await write(['outbox', 'entries'], async (tx) => {
     for (const one of settled) {
       const row = await tx.objectStore('entries').get(one.id);
       if (!row) continue;
       await tx.objectStore('entries').put({ ...row, whereabouts: one.whereabouts, seq: one.seq ?? row.seq, reason: one.reason });
       await tx.objectStore('outbox').delete(row.device_seq);
     }
-    await tx.done;
   });
   changed();
 }
 
 /** Puts an entry that needed a person back into the outbox, as it was: sent again, once more answered. */
 export async function sendAgain(id: string): Promise<void> {
-  await withDatabase(async (db) => {
-    const tx = db.transaction(['outbox', 'entries'], 'readwrite', { durability: 'strict' });
+  await write(['outbox', 'entries'], async (tx) => {
     const row = await tx.objectStore('entries').get(id);
     if (row && row.own === 1 && row.whereabouts === 'needs person') {
       await tx.objectStore('entries').put({ ...row, whereabouts: 'waiting', reason: null });
       await tx.objectStore('outbox').put({ device_seq: row.device_seq, id: row.id });
     }
-    await tx.done;
   });
   changed();
 }
@@ -74,8 +70,7 @@ export async function sendAgain(id: string): Promise<void> {
  * behind what it still has goes up again. The server tells repeated entries by their id.
  */
 export async function sendAgainAfter(contiguous: number): Promise<number> {
-  const count = await withDatabase(async (db) => {
-    const tx = db.transaction(['outbox', 'entries', 'settings'], 'readwrite', { durability: 'strict' });
+  const count = await write(['outbox', 'entries', 'settings'], async (tx) => {
     const device = (await tx.objectStore('settings').get('device')) as DeviceRow | undefined;
     let again = 0;
     if (device) {
@@ -87,7 +82,6 @@ export async function sendAgainAfter(contiguous: number): Promise<number> {
         again++;
       }
     }
-    await tx.done;
     return again;
   });
   if (count > 0) changed();
@@ -103,11 +97,7 @@ export function knownServer(): Promise<ServerRow> {
 
 /** Keeps the head of the server's chain: the phone is a witness of what was acknowledged. */
 export async function noteServer(server: ServerRow): Promise<void> {
-  await withDatabase(async (db) => {
-    const tx = db.transaction('settings', 'readwrite', { durability: 'strict' });
-    void tx.store.put(server, 'server');
-    await tx.done;
-  });
+  await write(['settings'], (tx) => tx.objectStore('settings').put(server, 'server'));
 }
 
 export function deviceId(): Promise<string | null> {

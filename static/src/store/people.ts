@@ -1,18 +1,14 @@
 // Who works on this phone. Kept here, so that a phone out of coverage knows its author for weeks; the server's own
 // session is a cookie that the page cannot read.
 import type { Session } from '../types.ts';
-import { changed, withDatabase } from './database.ts';
+import { changed, withDatabase, write } from './database.ts';
 
 export function keptSession(): Promise<Session | null> {
   return withDatabase(async (db) => ((await db.get('settings', 'session')) as Session | undefined) ?? null);
 }
 
 export async function keepSession(session: Session): Promise<void> {
-  await withDatabase(async (db) => {
-    const tx = db.transaction('settings', 'readwrite', { durability: 'strict' });
-    void tx.store.put(session, 'session');
-    await tx.done;
-  });
+  await write(['settings'], (tx) => tx.objectStore('settings').put(session, 'session'));
   changed();
 }
 
@@ -21,8 +17,7 @@ export async function keepSession(session: Session): Promise<void> {
  * device and chain. (ASVS 5.0.0 14.3.1 asks to clear everything; what was taken on a mast is the written exception.)
  */
 export async function clearAfterSignOut(): Promise<void> {
-  await withDatabase(async (db) => {
-    const tx = db.transaction(['settings', 'jobs', 'drafts', 'entries'], 'readwrite', { durability: 'strict' });
+  await write(['settings', 'jobs', 'drafts', 'entries'], async (tx) => {
     await tx.objectStore('settings').delete('session');
     await tx.objectStore('jobs').clear();
     await tx.objectStore('drafts').clear();
@@ -31,7 +26,6 @@ export async function clearAfterSignOut(): Promise<void> {
       if (cursor.value.own === 0) await cursor.delete();
       cursor = await cursor.continue();
     }
-    await tx.done;
   });
   changed();
 }

@@ -1,5 +1,5 @@
 // Small things by name: theme, language, who signed in last.
-import { changed, withDatabase } from './database.ts';
+import { changed, withDatabase, write } from './database.ts';
 import type { Settings } from './database.ts';
 
 export function getSetting<K extends keyof Settings>(name: K): Promise<Settings[K] | undefined> {
@@ -7,15 +7,11 @@ export function getSetting<K extends keyof Settings>(name: K): Promise<Settings[
 }
 
 export async function setSetting<K extends keyof Settings>(name: K, value: Settings[K]): Promise<void> {
-  await withDatabase(async (db) => {
-    const tx = db.transaction('settings', 'readwrite', { durability: 'strict' });
-    void tx.store.put(value, name as string);
-    await tx.done;
-  });
+  await write(['settings'], (tx) => tx.objectStore('settings').put(value, name as string));
   changed();
 }
 
 export async function dropSetting(name: string): Promise<void> {
-  await withDatabase((db) => db.delete('settings', name));
+  await write(['settings'], (tx) => tx.objectStore('settings').delete(name));
   changed();
 }

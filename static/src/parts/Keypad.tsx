@@ -1,0 +1,32 @@
+// Keys big enough for a glove. They write into the field that has the focus mark; a keyboard works beside them.
+import { t } from '../words/words';
+import { currentDecimalSign } from '../words/figures';
+import { Button } from './Button';
+
+export interface KeypadProps {
+  /** Applies a key to the text of the field in use. */
+  onKey: (change: (text: string) => string) => void;
+}
+
+export function Keypad({ onKey }: KeypadProps) {
+  const put = (sign: string) => () => onKey((text) => text + sign);
+  const sign = currentDecimalSign();
+  return (
+    <div class="keypad" role="group" aria-label={t('keypad.name')}>
+      {['1', '2', '3', '4', '5', '6', '7', '8', '9'].map((digit) => (
+        <Button key={digit} onPress={put(digit)}>
+          {digit}
+        </Button>
+      ))}
+      <Button onPress={put(sign)} label={sign === ',' ? t('keypad.comma') : t('keypad.point')}>
+        {sign}
+      </Button>
+      <Button onPress={put('0')}>0</Button>
+      <Button onPress={() => onKey((text) => text.slice(0, -1))} label={t('keypad.rub')}>
+        <svg width="34" height="26" viewBox="0 0 34 26" aria-hidden="true" focusable="false">
+          <path d="M11 2 H32 V24 H11 L2 13 Z M16 8 L26 18 M26 8 L16 18" fill="none" stroke="currentColor" stroke-width="3" />
+        </svg>
+      </Button>
+    </div>
+  );
+}

@@ -1,0 +1,42 @@
+// The path of the visit: a row of squares, filled when done, open when not, heavy where the person stands. Every one of
+// them can be opened at any time.
+import { t } from '../words/words';
+
+export interface VisitStep {
+  key: string;
+  label: string;
+  href: string;
+  done: boolean;
+  here: boolean;
+}
+
+export function VisitPath({ steps }: { steps: VisitStep[] }) {
+  return (
+    <nav aria-label={t('path.name')}>
+      <ol class="path">
+        {steps.map((step) => (
+          <li key={step.key}>
+            <a href={step.href} aria-current={step.here ? 'step' : undefined}>
+              <PathSquare done={step.done} here={step.here} />
+              <span>{step.label}</span>
+              <span class="spoken">{step.done ? t('path.done') : t('path.open')}</span>
+            </a>
+          </li>
+        ))}
+      </ol>
+    </nav>
+  );
+}
+
+function PathSquare({ done, here }: { done: boolean; here: boolean }) {
+  return (
+    <svg width="24" height="24" viewBox="0 0 24 24" aria-hidden="true" focusable="false">
+      {here ? (
+        <rect x="2.5" y="2.5" width="19" height="19" fill="none" stroke="currentColor" stroke-width="5" />
+      ) : (
+        <rect x="5" y="5" width="14" height="14" fill="none" stroke="currentColor" stroke-width="2.5" />
+      )}
+      {done && <rect x={here ? 7 : 5} y={here ? 7 : 5} width={here ? 10 : 14} height={here ? 10 : 14} fill="currentColor" />}
+    </svg>
+  );
+}

@@ -1,0 +1,57 @@
+// One mount of the job: what it came to, three drawings, limits, remedies, what it was judged with, its readings.
+
+import type { JobPage } from '../types';
+import { t } from './words';
+import { JudgedWith } from './JudgedWith';
+import { LimitsTable } from './LimitsTable';
+import { percent } from './format';
+import { ReadingsTable } from './ReadingsTable';
+import type { JobRecord } from './record';
+import { Remedies } from './Remedies';
+import { StateDrawings } from './StateDrawings';
+import { WordMark } from '../parts/WordMark';
+
+interface Props {
+  mount: JobPage['mounts'][number];
+  record: JobRecord;
+  several: boolean;
+  shown: boolean;
+}
+
+export function MountSection({ mount, record, several, shown }: Props) {
+  const { verdict, problem, sheet } = mount;
+  return (
+    // The mounts not looked at are kept for paper: a print holds the whole job.
+    <section class="mount" data-shown={shown} aria-labelledby={`mount-${mount.id}`}>
+      <h2 id={`mount-${mount.id}`} class={several ? undefined : 'alone'}>
+        {t('desk.mount', { name: mount.name })}
+      </h2>
+      {verdict !== null && (
+        <div class="verdict" data-word={verdict.word}>
+          <WordMark word={verdict.word} size={30} />
+          <p class="verdict-reason">{verdict.reason.text}</p>
+          <p class="verdict-odds">
+            {t('desk.verdict.odds', { percent: percent(verdict.probability), state: t(`desk.state.${verdict.judged}`) })}
+          </p>
+        </div>
+      )}
+      {verdict === null && (
+        <div class="verdict" data-word="none">
+          <p class="verdict-reason">
+            <strong>{t('desk.verdict.none')}</strong> {problem?.message ?? t('desk.verdict.none-yet')}
+          </p>
+          {problem?.field && <p class="verdict-odds">{problem.field}</p>}
+        </div>
+      )}
+      {verdict !== null && (
+        <>
+          <StateDrawings sheet={sheet} verdict={verdict} moves={record.moves.filter((m) => m.mount === mount.id)} />
+          <LimitsTable sheet={sheet} verdict={verdict} />
+          <Remedies verdict={verdict} />
+          <JudgedWith sheet={sheet} verdict={verdict} />
+        </>
+      )}
+      <ReadingsTable mount={mount.id} record={record} />
+    </section>
+  );
+}

@@ -1,0 +1,211 @@
+package verdict
+
+import (
+	"math"
+
+	"crossplumb/calc/codec"
+	"crossplumb/calc/doubt"
+	"crossplumb/calc/sheet"
+)
+
+// Verdict is the whole answer about one mount.
+type Verdict struct {
+	Word        string
+	Probability float64
+	Judged      sheet.State
+	Reason      Reason
+	Deciding    *Deciding
+	Limits      []LimitOutcome
+	Remedies    []Remedy
+	Missing     []Missing
+	Planned     []PlannedValue
+	AsFound     *StateOutcome
+	AsLeft      *StateOutcome
+	Geometry    Geometry
+	FarFromPlan bool
+	Around      string // the surroundings in words
+	Sight       bool
+	NotJudged   []NotJudged
+}
+
+// The codes of a reason.
+const (
+	LimitMissed        = "limit_missed"
+	AllMet             = "all_met"
+	Doubt              = "doubt"
+	MissingReading     = "missing_reading"
+	SurroundingsDecide = "surroundings_decide"
+)
+
+// Reason is why the word is what it is.
+type Reason struct{ Code, Limit, Antenna, Quantity, Text string }
+
+// LimitOutcome is a limit beside what the mount gives. The numbers are nil where
+// there is none: not applicable, or without end (no cross-talk at all).
+type LimitOutcome struct {
+	Name, Sense, Unit, WhyNot           string
+	Limit                               float64
+	Value, U, Low, High, Margin, Chance *float64
+	Applicable                          bool
+}
+
+// PlannedValue is what the plan gives for one limit, nil without end or none.
+type PlannedValue struct {
+	Name  string
+	Value *float64
+}
+
+// StateOutcome is the verdict on one state.
+type StateOutcome struct {
+	Word        string
+	Probability float64
+	Limits      []LimitOutcome
+}
+
+// NotJudged is a limit that applies but could not be computed.
+type NotJudged struct{ Limit, Why string }
+
+// judge holds what one verdict computes with.
+type judge struct {
+	*model
+	limits []limit
+	draws  *doubt.Draws
+	dims   int // variables that the widest state needs
+}
+
+// Judge computes the verdict of a sheet. The state judged is the latest one that
+// has any reading of the near end. A problem says that the sheet asks for nothing
+// that applies, or that its readings can not be true together.
+func Judge(s *sheet.Sheet) (*Verdict, *codec.Problem) {
+	if len(s.Limits) == 0 {
+		return nil, &codec.Problem{Code: codec.MissingField, Field: "limits", Message: "a verdict needs at least one limit to judge by"}
+	}
+	j := &judge{model: newModel(s)}
+	j.limits = j.model.limits()
+	applies := false
+	for k := range j.limits {
+		applies = applies || j.limits[k].whyNot == ""
+	}
+	if !applies {
+		return nil, &codec.Problem{Code: codec.Impossible, Field: "limits", Message: "none of the limits applies to this mount (" + j.limits[0].whyNot + "); set one that does"}
+	}
+	var beliefs [3]*belief
+	for st := sheet.Planned; st <= sheet.AsLeft; st++ {
+		b, p := j.believe(st)
+		if p != nil {
+			return nil, p
+		}
+		sp := spreadOf(b)
+		if j.dims = max(j.dims, sp.dims); j.dims > doubt.MaxDims {
+			return nil, &codec.Problem{Code: codec.TooLarge, Field: "near.antennas", Message: "the readings name more instruments than can be told apart; name fewer"}
+		}
+		beliefs[st] = b
+	}
+	v := &Verdict{Judged: sheet.Planned, Sight: s.Surroundings.Sight, Around: around(s)}
+	for st := sheet.AsLeft; st > sheet.Planned; st-- {
+		if beliefs[st].readings > 0 {
+			v.Judged = st
+			break
+		}
+	}
+	b := beliefs[v.Judged]
+	o := j.run(b)
+	v.Probability = o.joint
+	v.Limits = j.report(o)
+	v.Missing = j.model.missing(b)
+	v.FarFromPlan = j.farFromPlan(b)
+	v.Planned = j.planned()
+	v.Geometry = j.geometry(beliefs, v.Judged)
+	for k := range j.limits {
+		if j.limits[k].whoNot != "" {
+			v.NotJudged = append(v.NotJudged, NotJudged{j.limits[k].Name, j.limits[k].whoNot})
+		}
+	}
+	v.Word = j.word(o.joint, len(v.Missing) > 0, len(v.NotJudged) > 0)
+	if beliefs[sheet.AsFound].readings > 0 {
+		v.AsFound = j.stateOutcome(beliefs[sheet.AsFound], v, o)
+	}
+	if beliefs[sheet.AsLeft].readings > 0 {
+		v.AsLeft = j.stateOutcome(beliefs[sheet.AsLeft], v, o)
+	}
+	if v.Word != Go && v.Judged != sheet.Planned {
+		v.Remedies = j.remedies(b, o)
+	}
+	if v.Word == MeasureAgain && len(v.Missing) == 0 {
+		v.Deciding = j.deciding(b, o)
+	}
+	v.Reason = j.reason(v, b, o)
+	return v, nil
+}
+
+// word is the word for a probability; never go while a reading or a limit is
+// missing from it.
+func (j *judge) word(p float64, missing, notJudged bool) string {
+	w := wordOf(p)
+	if w == Go && (missing || notJudged) {
+		return MeasureAgain
+	}
+	return w
+}
+
+func (j *judge) stateOutcome(b *belief, v *Verdict, judged *outcome) *StateOutcome {
+	o := judged
+	if b.state != v.Judged {
+		o = j.run(b)
+	}
+	w := j.word(o.joint, len(j.model.missing(b)) > 0, len(v.NotJudged) > 0)
+	return &StateOutcome{Word: w, Probability: o.joint, Limits: j.report(o)}
+}
+
+// finite is nil for a number without end.
+func finite(x float64) *float64 {
+	if math.IsInf(x, 0) || math.IsNaN(x) {
+		return nil
+	}
+	return &x
+}
+
+// report sums up the draws of every limit. It sorts the draws.
+func (j *judge) report(o *outcome) []LimitOutcome {
+	out := make([]LimitOutcome, len(j.limits))
+	for k := range j.limits {
+		l := &j.limits[k]
+		r := LimitOutcome{Name: l.Name, Sense: "at most", Unit: l.kind.Unit, Limit: l.Limit.Value, Applicable: l.whyNot == "", WhyNot: l.whyNot}
+		if l.AtLeast {
+			r.Sense = "at least"
+		}
+		if o.values[k] != nil {
+			s := doubt.Summarise(append([]float64(nil), o.values[k]...))
+			r.Value, r.U, r.Low, r.High = finite(s.Median), finite(s.U), finite(s.Low), finite(s.High)
+			r.Margin, r.Chance = finite(l.margin(s.Median)), finite(o.met[k])
+		} else if l.whyNot == "" {
+			r.WhyNot = l.whoNot
+		}
+		out[k] = r
+	}
+	return out
+}
+
+// planned are the values of the plan itself, without doubt.
+func (j *judge) planned() []PlannedValue {
+	out := make([]PlannedValue, 0, len(j.limits))
+	for k := range j.limits {
+		l := &j.limits[k]
+		if l.value == nil {
+			continue
+		}
+		out = append(out, PlannedValue{l.Name, finite(l.value(j.plan))})
+	}
+	return out
+}
+
+// critical is the limit that fails most often, −1 without any.
+func (j *judge) critical(o *outcome) int {
+	worst := -1
+	for k := range j.limits {
+		if j.limits[k].value != nil && (worst < 0 || o.met[k] < o.met[worst]) {
+			worst = k
+		}
+	}
+	return worst
+}

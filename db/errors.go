@@ -3,6 +3,8 @@ package db
 import (
 	"errors"
 	"fmt"
+
+	sqlite3 "github.com/mattn/go-sqlite3"
 )
 
 // What a caller may have to tell apart. Everything else that comes back is a fault of the database or of this code.
@@ -43,4 +45,16 @@ const (
 
 func refuse(code, format string, args ...any) *Refusal {
 	return &Refusal{Code: code, Reason: fmt.Sprintf(format, args...)}
+}
+
+// IsFull tells that the disk would not take it: full, read-only or failing. Nothing of the transaction was stored.
+func IsFull(err error) bool {
+	var e sqlite3.Error
+	return errors.As(err, &e) && (e.Code == sqlite3.ErrFull || e.Code == sqlite3.ErrIoErr || e.Code == sqlite3.ErrReadonly)
+}
+
+// IsBusy tells that another process held the database for too long, or that the time for it ran out.
+func IsBusy(err error) bool {
+	var e sqlite3.Error
+	return errors.As(err, &e) && (e.Code == sqlite3.ErrBusy || e.Code == sqlite3.ErrLocked || e.Code == sqlite3.ErrInterrupt)
 }

@@ -145,11 +145,11 @@ type LogEntry struct {
 	Raw        string
 }
 
-// JobLog is the whole log of one job in order of seq.
-func (s *Store) JobLog(ctx context.Context, job string) ([]LogEntry, error) {
+// JobLog is the log of one job up to upTo, in order of seq.
+func (s *Store) JobLog(ctx context.Context, job string, upTo int64) ([]LogEntry, error) {
 	return s.logRows(ctx, `
 		SELECT e.seq, e.received_ms, e.sent_ms, coalesce(p.name, ''), e.raw
-		FROM entries e LEFT JOIN people p ON p.id = e.author WHERE e.job = ? ORDER BY e.seq`, job)
+		FROM entries e LEFT JOIN people p ON p.id = e.author WHERE e.job = ? AND e.seq <= ? ORDER BY e.seq`, job, upTo)
 }
 
 // Plan is the job's plan and the text it stands in.

@@ -123,3 +123,20 @@ func (s *Store) Device(ctx context.Context, device string) (Device, error) {
 	}
 	return d, err
 }
+
+// MarkDemo says for good that what is in here was invented.
+func (s *Store) MarkDemo(ctx context.Context) error {
+	return s.inTx(ctx, func(tx *sql.Tx) error {
+		_, err := tx.ExecContext(ctx, "INSERT INTO meta (key, value) VALUES ('demo', 'yes') ON CONFLICT (key) DO NOTHING")
+		return err
+	})
+}
+
+// IsDemo tells whether MarkDemo was ever called.
+func (s *Store) IsDemo(ctx context.Context) (bool, error) {
+	_, err := metaValue(ctx, s.read, "demo")
+	if err == sql.ErrNoRows {
+		return false, nil
+	}
+	return err == nil, err
+}

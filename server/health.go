@@ -1,0 +1,21 @@
+package server
+
+import (
+	"net/http"
+
+	"github.com/gofiber/fiber/v2"
+)
+
+// GET /healthz tells that the process answers and the log can be written. It is open to everybody and says nothing else.
+func (s *Server) health(c *fiber.Ctx) error {
+	if err := knownQuery(c); err != nil {
+		return err
+	}
+	ctx, done := s.patience()
+	defer done()
+	if err := s.cfg.Store.Ping(ctx); err != nil {
+		return err
+	}
+	c.Set(fiber.HeaderCacheControl, "no-store")
+	return answer(c, http.StatusOK, map[string]any{"status": "ok", "demo": s.cfg.Demo})
+}

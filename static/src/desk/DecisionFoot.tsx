@@ -25,7 +25,8 @@ type Choice = { decision: 'sign off' | 'send back'; id: string };
 export function DecisionFoot({ opened, record, onStale, onDecided }: Props) {
   const { page, log } = opened;
   const [choice, setChoice] = useState<Choice | null>(null);
-  const [remark, setRemark] = useState('');
+  // Each decision has a remark of its own: what the crew is to do is not what is signed.
+  const [remarks, setRemarks] = useState({ 'sign off': '', 'send back': '' });
   const [complaint, setComplaint] = useState<string | null>(null);
   const [stale, setStale] = useState(false);
   const [busy, setBusy] = useState(false);
@@ -61,7 +62,7 @@ export function DecisionFoot({ opened, record, onStale, onDecided }: Props) {
   const submit = (event: Event) => {
     event.preventDefault();
     if (choice === null || busy) return;
-    const text = remark.trim();
+    const text = remarks[choice.decision].trim();
     if (choice.decision === 'send back' && text === '') {
       setComplaint(t('desk.decision.remark-missing'));
       field.current?.focus();
@@ -79,7 +80,7 @@ export function DecisionFoot({ opened, record, onStale, onDecided }: Props) {
       .then(
         () => {
           setChoice(null);
-          setRemark('');
+          setRemarks({ 'sign off': '', 'send back': '' });
           onDecided();
         },
         (err: unknown) => {
@@ -125,7 +126,7 @@ export function DecisionFoot({ opened, record, onStale, onDecided }: Props) {
                   })}{' '}
                 </strong>
               )}
-              {t('desk.decision.means')}
+              {t('desk.decision.means', { n: page.mounts.length })}
             </p>
           )}
           <label>
@@ -135,10 +136,10 @@ export function DecisionFoot({ opened, record, onStale, onDecided }: Props) {
             <textarea
               ref={field}
               rows={3}
-              value={remark}
+              value={remarks[choice.decision]}
               aria-invalid={complaint !== null}
               aria-describedby={complaint === null ? undefined : 'decision-complaint'}
-              onInput={(e) => setRemark(e.currentTarget.value)}
+              onInput={(e) => setRemarks({ ...remarks, [choice.decision]: e.currentTarget.value })}
             />
           </label>
           {complaint !== null && (

@@ -1,6 +1,6 @@
 // The bar on top: the four lists with their counts, plan, people, the search box, and who is signed in.
 
-import { useState } from 'preact/hooks';
+import { useEffect, useRef, useState } from 'preact/hooks';
 import type { JobSummary, User } from '../types';
 import { Button } from '../parts/Button';
 import { t } from './words';
@@ -61,8 +61,22 @@ function Account({ user, onSignOut }: { user: User; onSignOut: () => void }) {
     applyTheme(next);
     setTheme(next);
   };
+  // A press elsewhere or another page closes the sheet.
+  const sheet = useRef<HTMLDetailsElement>(null);
+  useEffect(() => {
+    const close = (event: Event) => {
+      const details = sheet.current;
+      if (details && !(event.type === 'pointerdown' && details.contains(event.target as Node))) details.open = false;
+    };
+    addEventListener('pointerdown', close);
+    addEventListener('hashchange', close);
+    return () => {
+      removeEventListener('pointerdown', close);
+      removeEventListener('hashchange', close);
+    };
+  }, []);
   return (
-    <details class="account">
+    <details class="account" ref={sheet}>
       <summary>{user.name}</summary>
       <div class="account-sheet">
         <fieldset>

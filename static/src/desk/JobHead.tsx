@@ -17,8 +17,9 @@ interface Props {
 }
 
 export function JobHead({ heading, page, record, shown, tab }: Props) {
-  const { job, plan } = page;
+  const { job } = page;
   const facts = [
+    ...(page.mounts.length === 1 ? page.mounts.map((m) => t('desk.mount', { name: m.name })) : []),
     job.visit_on === null ? t('desk.no-visit') : t('desk.visit', { day: day(job.visit_on) }),
     t('desk.crew', { crew: job.crew }),
     t('desk.phones', { n: record.phones.length }),
@@ -50,15 +51,6 @@ export function JobHead({ heading, page, record, shown, tab }: Props) {
           <strong>{t('desk.sent-back-why')}</strong> <span class="remark">{job.remark}</span>
         </p>
       )}
-      {(plan.access || plan.emergency || plan.lat_deg !== null) && (
-        <dl class="job-plan">
-          {plan.lat_deg !== null && plan.lon_deg !== null && (
-            <Fact name={t('desk.plan.coordinates')}>{`${plan.lat_deg}°, ${plan.lon_deg}°`}</Fact>
-          )}
-          {plan.access && <Fact name={t('desk.plan.access')}>{plan.access}</Fact>}
-          {plan.emergency && <Fact name={t('desk.plan.emergency')}>{plan.emergency}</Fact>}
-        </dl>
-      )}
       {page.mounts.length > 1 && (
         <nav class="mounts" aria-label={t('desk.mounts')}>
           {page.mounts.map((m) => (
@@ -67,20 +59,11 @@ export function JobHead({ heading, page, record, shown, tab }: Props) {
               href={hrefOf({ page: 'queue', tab, job: job.id, mount: m.id })}
               aria-current={m.id === shown ? 'true' : undefined}
             >
-              {m.name} {m.verdict !== null && <WordMark word={m.verdict.word} />}
+              {m.name} {m.verdict !== null && m.verdict.judged !== 'planned' && <WordMark word={m.verdict.word} />}
             </a>
           ))}
         </nav>
       )}
     </header>
-  );
-}
-
-function Fact({ name, children }: { name: string; children: string }) {
-  return (
-    <div>
-      <dt>{name}</dt>
-      <dd>{children}</dd>
-    </div>
   );
 }

@@ -19,22 +19,24 @@ interface LimitKind {
   name: LimitName;
   sense: 'at_least' | 'at_most';
   unit: string;
+  /** Shown = value in the sheet × this. */
+  shows: number;
   /** What stands in the field when the limit is added. */
   first: number;
 }
 
 export const limitKinds: readonly LimitKind[] = [
-  { name: 'effective_streams', sense: 'at_least', unit: '', first: 1.5 },
-  { name: 'rate_share', sense: 'at_least', unit: '', first: 0.9 },
-  { name: 'crosstalk_db', sense: 'at_least', unit: 'dB', first: 25 },
-  { name: 'envelope_correlation', sense: 'at_most', unit: '', first: 0.5 },
-  { name: 'pointing_loss_db', sense: 'at_most', unit: 'dB', first: 1 },
-  { name: 'chain_imbalance_db', sense: 'at_most', unit: 'dB', first: 3 },
-  { name: 'pair_angle_error_deg', sense: 'at_most', unit: '°', first: 3 },
-  { name: 'skew_deviation_deg', sense: 'at_most', unit: '°', first: 2 },
-  { name: 'tilt_deviation_deg', sense: 'at_most', unit: '°', first: 1 },
-  { name: 'azimuth_deviation_deg', sense: 'at_most', unit: '°', first: 3 },
-  { name: 'position_deviation_mm', sense: 'at_most', unit: 'mm', first: 20 },
+  { name: 'effective_streams', sense: 'at_least', unit: '', shows: 1, first: 1.5 },
+  { name: 'rate_share', sense: 'at_least', unit: '%', shows: 100, first: 0.9 },
+  { name: 'crosstalk_db', sense: 'at_least', unit: 'dB', shows: 1, first: 25 },
+  { name: 'envelope_correlation', sense: 'at_most', unit: '', shows: 1, first: 0.5 },
+  { name: 'pointing_loss_db', sense: 'at_most', unit: 'dB', shows: 1, first: 1 },
+  { name: 'chain_imbalance_db', sense: 'at_most', unit: 'dB', shows: 1, first: 3 },
+  { name: 'pair_angle_error_deg', sense: 'at_most', unit: '°', shows: 1, first: 3 },
+  { name: 'skew_deviation_deg', sense: 'at_most', unit: '°', shows: 1, first: 2 },
+  { name: 'tilt_deviation_deg', sense: 'at_most', unit: '°', shows: 1, first: 1 },
+  { name: 'azimuth_deviation_deg', sense: 'at_most', unit: '°', shows: 1, first: 3 },
+  { name: 'position_deviation_mm', sense: 'at_most', unit: 'mm', shows: 1, first: 20 },
 ];
 
 export function LimitFields({ id, sheet, edit, problemAt, onUnread }: Props) {
@@ -58,8 +60,8 @@ export function LimitFields({ id, sheet, edit, problemAt, onUnread }: Props) {
               id={`${id}-${limit.name}`}
               label={t(kind.sense === 'at_least' ? 'desk.plan.at-least' : 'desk.plan.at-most', { limit: title })}
               unit={kind.unit}
-              value={limit[kind.sense] ?? null}
-              onValue={(v) => v !== null && edit((s) => s.limits[i] && (s.limits[i][kind.sense] = v))}
+              value={limit[kind.sense] == null ? null : (limit[kind.sense] ?? 0) * kind.shows}
+              onValue={(v) => v !== null && edit((s) => s.limits[i] && (s.limits[i][kind.sense] = v / kind.shows))}
               problem={problemAt(`limits[${i}]`)}
               onUnread={onUnread}
             />

@@ -14,19 +14,21 @@ import { WordMark } from '../parts/WordMark';
 interface Props {
   mount: JobPage['mounts'][number];
   record: JobRecord;
-  several: boolean;
   shown: boolean;
 }
 
-export function MountSection({ mount, record, several, shown }: Props) {
+export function MountSection({ mount, record, shown }: Props) {
   const { verdict, problem, sheet } = mount;
   return (
     // The mounts not looked at are kept for paper: a print holds the whole job.
     <section class="mount" data-shown={shown} aria-labelledby={`mount-${mount.id}`}>
-      <h2 id={`mount-${mount.id}`} class={several ? undefined : 'alone'}>
-        {t('desk.mount', { name: mount.name })}
-      </h2>
-      {verdict !== null && (
+      <h2 id={`mount-${mount.id}`}>{t('desk.mount', { name: mount.name })}</h2>
+      {verdict !== null && verdict.judged === 'planned' && (
+        <div class="verdict" data-word="none">
+          <p class="verdict-reason">{t('desk.verdict.planned')}</p>
+        </div>
+      )}
+      {verdict !== null && verdict.judged !== 'planned' && (
         <div class="verdict" data-word={verdict.word}>
           <WordMark word={verdict.word} size={30} />
           <p class="verdict-reason">{verdict.reason.text}</p>
@@ -38,9 +40,9 @@ export function MountSection({ mount, record, several, shown }: Props) {
       {verdict === null && (
         <div class="verdict" data-word="none">
           <p class="verdict-reason">
-            <strong>{t('desk.verdict.none')}</strong> {problem?.message ?? t('desk.verdict.none-yet')}
+            <strong>{t('desk.verdict.none')}</strong> {problem?.field && <code>{problem.field}: </code>}
+            {problem?.message ?? t('desk.verdict.none-yet')}
           </p>
-          {problem?.field && <p class="verdict-odds">{problem.field}</p>}
         </div>
       )}
       {verdict !== null && (

@@ -97,7 +97,7 @@ function InviteForm({ crews }: { crews: string[] }) {
       <h2>{t('desk.invite')}</h2>
       <form class="sheet-form" onSubmit={submit} noValidate>
         <fieldset class="choices">
-          <legend>{t('desk.people.role')}</legend>
+          <legend>{t('desk.invite.role')}</legend>
           {(['climber', 'supervisor'] as const).map((each) => (
             <label key={each}>
               <input type="radio" name="role" checked={role === each} onChange={() => setRole(each)} />
@@ -109,7 +109,7 @@ function InviteForm({ crews }: { crews: string[] }) {
         </fieldset>
         {role === 'climber' && (
           <label class="item">
-            <span>{t('desk.people.crew')}</span>
+            <span>{t('desk.invite.crew')}</span>
             <input
               value={crew}
               list="crews"

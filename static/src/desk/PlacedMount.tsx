@@ -16,6 +16,8 @@ interface Props {
 export function PlacedMount({ sheet, verdict, state, marked = [], most = 200 }: Props) {
   const antennas = drawnFrom(sheet, verdict, state).map((a) => ({
     ...a,
+    // The plan is not a reading that is missing: it is drawn as firmly as what was measured.
+    read: state === 'planned' ? { skew: true, tilt: true, azimuth: true, position: true } : a.read,
     off: [...new Set([...a.off, ...marked.filter((m) => m.antenna === a.id).map((m) => m.quantity)])],
   }));
   return (

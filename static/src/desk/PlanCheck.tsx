@@ -66,13 +66,8 @@ export function PlanCheck({ sheet, check }: { sheet: Sheet | null; check: Check 
       {check.unreachable && <Message tone="warn">{t('desk.check.unreachable')}</Message>}
       {problem !== null && (
         <Message tone="wrong">
+          {problem.field !== '' && <code class="at-field">{problem.field}</code>}
           {problem.message}
-          {problem.field !== '' && (
-            <>
-              {' '}
-              <code class="at-field">{problem.field}</code>
-            </>
-          )}
         </Message>
       )}
       {sheet === null && <p>{t('desk.plan.unreadable')}</p>}

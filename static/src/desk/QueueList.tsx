@@ -30,6 +30,8 @@ export function QueueList({ queue, tab, open, search, onSearch }: Props) {
   const list = search.trim() === '' ? all : all.filter((j) => matches(j, search.trim()));
   return (
     <aside class="queue" aria-label={t(`desk.tab.${tab}`)}>
+      {/* Beside an open job its site is the heading of the page; without one the list is the page. */}
+      {open === null ? <h1 class="spoken">{t(`desk.tab.${tab}`)}</h1> : <h2 class="spoken">{t(`desk.tab.${tab}`)}</h2>}
       <p class="queue-order">
         {t(tab === 'signed-off' ? 'desk.newest-first' : 'desk.oldest-first')}
         {queue.trouble !== null && queue.answeredAt !== null && (
@@ -54,7 +56,7 @@ export function QueueList({ queue, tab, open, search, onSearch }: Props) {
                 {job.title} · {t('desk.crew', { crew: job.crew })}
                 {job.stage === 'sent back' && <> · {t('desk.stage.sent back')}</>}
               </span>
-              <span class="queue-words">
+              <span class="queue-words" hidden={tab === 'issued'}>
                 {job.mounts.map((m) => {
                   const word = job.words[m.id];
                   return (

@@ -1,6 +1,7 @@
 // The entrance: name and passphrase; or, with a one-time link, a new person choosing both.
 
-import { useState } from 'preact/hooks';
+import { useEffect, useRef, useState } from 'preact/hooks';
+import type { ComponentChildren } from 'preact';
 import type { Session } from '../types';
 import { Button } from '../parts/Button';
 import { Message } from '../parts/Message';
@@ -62,60 +63,70 @@ export function SignIn({ invitation, again, onEntered }: Props) {
     );
   const describedBy = (field: Complaint['field']) => (complaint?.field === field ? `entry-${field}` : undefined);
 
-  return (
-    <main class="entrance" data-again={again !== undefined}>
-      <form class="entrance-form" onSubmit={submit} noValidate>
-        <h1>{t(again !== undefined ? 'desk.entry.again' : fresh ? 'desk.entry.invited' : 'desk.brand')}</h1>
-        <p>{t(again !== undefined ? 'desk.entry.again-why' : fresh ? 'desk.entry.invited-why' : 'desk.entry.why')}</p>
+  const form = (
+    <form class="entrance-form" onSubmit={submit} noValidate>
+      <h1>{t(again !== undefined ? 'desk.entry.again' : fresh ? 'desk.entry.invited' : 'desk.brand')}</h1>
+      <p>{t(again !== undefined ? 'desk.entry.again-why' : fresh ? 'desk.entry.invited-why' : 'desk.entry.why')}</p>
+      <label>
+        <span>{t('desk.entry.name')}</span>
+        <input
+          value={name}
+          autocomplete="username"
+          autocapitalize="none"
+          spellcheck={false}
+          aria-invalid={complaint?.field === 'name'}
+          aria-describedby={describedBy('name')}
+          onInput={(e) => setName(e.currentTarget.value)}
+        />
+        {beside('name')}
+      </label>
+      <label>
+        <span>{t('desk.entry.passphrase')}</span>
+        {fresh && <span class="hint">{t('desk.entry.advice')}</span>}
+        <input
+          {...secret}
+          value={passphrase}
+          autocomplete={fresh ? 'new-password' : 'current-password'}
+          aria-invalid={complaint?.field === 'passphrase'}
+          aria-describedby={describedBy('passphrase')}
+          onInput={(e) => setPassphrase(e.currentTarget.value)}
+        />
+        {beside('passphrase')}
+      </label>
+      {fresh && (
         <label>
-          <span>{t('desk.entry.name')}</span>
-          <input
-            value={name}
-            autocomplete="username"
-            autocapitalize="none"
-            spellcheck={false}
-            aria-invalid={complaint?.field === 'name'}
-            aria-describedby={describedBy('name')}
-            onInput={(e) => setName(e.currentTarget.value)}
-          />
-          {beside('name')}
-        </label>
-        <label>
-          <span>{t('desk.entry.passphrase')}</span>
-          {fresh && <span class="hint">{t('desk.entry.advice')}</span>}
+          <span>{t('desk.entry.twice')}</span>
           <input
             {...secret}
-            value={passphrase}
-            autocomplete={fresh ? 'new-password' : 'current-password'}
-            aria-invalid={complaint?.field === 'passphrase'}
-            aria-describedby={describedBy('passphrase')}
-            onInput={(e) => setPassphrase(e.currentTarget.value)}
+            value={twice}
+            autocomplete="new-password"
+            aria-invalid={complaint?.field === 'twice'}
+            aria-describedby={describedBy('twice')}
+            onInput={(e) => setTwice(e.currentTarget.value)}
           />
-          {beside('passphrase')}
+          {beside('twice')}
         </label>
-        {fresh && (
-          <label>
-            <span>{t('desk.entry.twice')}</span>
-            <input
-              {...secret}
-              value={twice}
-              autocomplete="new-password"
-              aria-invalid={complaint?.field === 'twice'}
-              aria-describedby={describedBy('twice')}
-              onInput={(e) => setTwice(e.currentTarget.value)}
-            />
-            {beside('twice')}
-          </label>
-        )}
-        <label class="tick">
-          <input type="checkbox" checked={shown} onChange={(e) => setShown(e.currentTarget.checked)} />
-          {t('desk.entry.show')}
-        </label>
-        {beside('form')}
-        <Button type="submit" kind="first" disabled={busy}>
-          {t(busy ? 'desk.entry.busy' : fresh ? 'desk.entry.join' : 'desk.entry.go')}
-        </Button>
-      </form>
-    </main>
+      )}
+      <label class="tick">
+        <input type="checkbox" checked={shown} onChange={(e) => setShown(e.currentTarget.checked)} />
+        {t('desk.entry.show')}
+      </label>
+      {beside('form')}
+      <Button type="submit" kind="first" disabled={busy}>
+        {t(busy ? 'desk.entry.busy' : fresh ? 'desk.entry.join' : 'desk.entry.go')}
+      </Button>
+    </form>
+  );
+  return again === undefined ? <main class="entrance">{form}</main> : <Over>{form}</Over>;
+}
+
+/** Over the page, which keeps what was typed in it; nothing beneath can be reached meanwhile. */
+function Over({ children }: { children: ComponentChildren }) {
+  const dialog = useRef<HTMLDialogElement>(null);
+  useEffect(() => dialog.current?.showModal(), []);
+  return (
+    <dialog class="entrance over" ref={dialog} aria-label={t('desk.entry.again')} onCancel={(e) => e.preventDefault()}>
+      {children}
+    </dialog>
   );
 }

@@ -28,16 +28,14 @@ export function StateDrawings({ sheet, verdict, moves }: Props) {
               {word !== null && <WordMark word={word} size={18} />}
             </figcaption>
             {there ? (
-              <>
-                <PlacedMount sheet={sheet} verdict={verdict} state={state} marked={moved} />
-                <p class="drawing-note">
-                  {t('drawing.from-behind')}
-                  {moved.length > 0 && <> · {t('desk.drawing.moved', { parts: parts(moved) })}</>}
-                </p>
-              </>
+              <PlacedMount sheet={sheet} verdict={verdict} state={state} marked={moved} />
             ) : (
               <p class="drawing-empty">{t('desk.drawing.none')}</p>
             )}
+            <p class="drawing-note">
+              {t('drawing.from-behind')}
+              {moved.length > 0 && <> · {t('desk.drawing.moved', { parts: parts(moved) })}</>}
+            </p>
           </figure>
         );
       })}

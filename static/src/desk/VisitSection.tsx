@@ -4,7 +4,7 @@
 import type { JobPage, State, Verdict, Word } from '../types';
 import { t } from './words';
 import { usualCautions } from './cautions';
-import { percent, placeTime } from './format';
+import { asGiven, percent, placeTime } from './format';
 import type { JobRecord, Line } from './record';
 import { WordMark } from '../parts/WordMark';
 
@@ -17,6 +17,7 @@ export function VisitSection({ page, record }: Props) {
   return (
     <section class="visit">
       <Cautions record={record} />
+      <Planned page={page} />
       <Notes page={page} record={record} />
       {record.handIns.length > 0 && (
         <section class="hand-ins">
@@ -38,6 +39,34 @@ export function VisitSection({ page, record }: Props) {
             ))}
           </ul>
         </section>
+      )}
+    </section>
+  );
+}
+
+/** What the crew was told about the place. */
+function Planned({ page }: { page: JobPage }) {
+  const { plan } = page;
+  const facts: [string, string][] = [];
+  if (plan.access) facts.push([t('desk.plan.access'), plan.access]);
+  if (plan.emergency) facts.push([t('desk.plan.emergency'), plan.emergency]);
+  if (plan.lat_deg !== null && plan.lon_deg !== null) {
+    facts.push([t('desk.plan.coordinates'), `${asGiven(plan.lat_deg, 'deg')}, ${asGiven(plan.lon_deg, 'deg')}`]);
+  }
+  return (
+    <section class="told">
+      <h3>{t('desk.told')}</h3>
+      {facts.length === 0 ? (
+        <p class="hint">{t('desk.told.nothing')}</p>
+      ) : (
+        <dl>
+          {facts.map(([name, text]) => (
+            <div key={name}>
+              <dt>{name}</dt>
+              <dd>{text}</dd>
+            </div>
+          ))}
+        </dl>
       )}
     </section>
   );

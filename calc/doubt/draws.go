@@ -10,13 +10,12 @@ import (
 const MaxDims = len(lattice)
 
 // BlockSize is how many points one block of draws has.
-const BlockSize = 1024
+const BlockSize = 2048
 
 // Draws are standard normal deviates for every variable of a computation, the
 // same ones each time: randomised quasi-random points instead of random ones,
 // because they fill the space more evenly. Each block is one shifted lattice of
-// BlockSize points; the blocks are independent of each other, so that what they
-// disagree by is a fair measure of the sampling error.
+// BlockSize points; blocks are shifted independently of each other.
 //
 // Reference: Sloan and Joe, Lattice Methods for Multiple Integration; propagation
 // of distributions by draws: JCGM 101:2008.
@@ -30,7 +29,7 @@ type Draws struct {
 //
 // Every variable takes the midpoints of BlockSize equal shares of probability,
 // once each in a block, so that a quantity which hangs on one variable alone has
-// its quantiles to a thousandth.
+// its quantiles to half a thousandth.
 func NewDraws(blocks, dims int) *Draws {
 	if dims > MaxDims {
 		panic("doubt: more variables than the lattice has")

@@ -16,6 +16,22 @@ func Lean(lean, toward, azimuth float64) (tilt, skew float64) {
 	return -lean * c, lean * s
 }
 
+// LeanFromAxes returns the lean of a mast and the way it leans from readings in
+// two vertical planes: the parts of the lean toward two bearings. The lean is the
+// horizontal vector with these projections. Planes that are nearly one tell
+// nothing of the other direction: within 20° of parallel ok is false.
+func LeanFromAxes(first, firstToward, second, secondToward float64) (lean, toward float64, ok bool) {
+	sinA, cosA := math.Sincos(firstToward)
+	sinB, cosB := math.Sincos(secondToward)
+	det := sinA*cosB - cosA*sinB
+	if math.Abs(det) < math.Sin(20*degree) {
+		return 0, 0, false
+	}
+	east := (first*cosB - second*cosA) / det
+	north := (second*sinA - first*sinB) / det
+	return math.Hypot(east, north), Turn(math.Atan2(east, north)), true
+}
+
 // EdgeLevel is what a level reads that lies across the edge of a body of this
 // skew and tilt: the level feels the slope of that edge against the horizon,
 //

@@ -176,6 +176,23 @@ func TestLeanAgainstRotation(t *testing.T) {
 	}
 }
 
+func TestLeanFromAxes(t *testing.T) {
+	for toward := 0.0; toward < 360; toward += 20 {
+		for _, planes := range [][2]float64{{0, 90}, {90, 180}, {33, 100}, {300, 20}} {
+			part := func(plane float64) float64 { return 2 * degree * math.Cos((toward-plane)*degree) }
+			lean, way, ok := LeanFromAxes(part(planes[0]), planes[0]*degree, part(planes[1]), planes[1]*degree)
+			if !ok {
+				t.Fatal("refused")
+			}
+			near(t, "lean", lean/degree, 2, 1e-9)
+			nearTurn(t, "toward", way/degree, toward, 1e-9)
+		}
+	}
+	if _, _, ok := LeanFromAxes(1, 0, 1, 190*degree); ok {
+		t.Error("two planes 10° apart were taken")
+	}
+}
+
 func TestEdgeLevel(t *testing.T) {
 	for skew := -80.0; skew <= 80; skew += 20 {
 		for tilt := -40.0; tilt <= 40; tilt += 10 {

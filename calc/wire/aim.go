@@ -453,6 +453,9 @@ func aimPath(v *codec.Value) (answer, *Problem) {
 			Top:   g.Number("top_m", height),
 			Doubt: g.NumberOr("u_m", topDoubtM, codec.Between(0, 1000)),
 		}
+		if g.Problem() == nil && !v.Described() && f.Problem() == nil && o.At < p.Distance && min(o.At, p.Distance-o.At) < p.Wavelength {
+			g.Fail(g.Refuse("at_m", codec.NotModelled, "stands within a wavelength of an antenna, where no knife edge is; take it out and look at the antenna's own surroundings"))
+		}
 		if g.Problem() == nil && !v.Described() && f.Problem() == nil && o.At >= p.Distance {
 			g.Fail(g.Refuse("at_m", codec.OutOfRange, "lies at or beyond the far end, "+strconv.FormatFloat(p.Distance, 'f', -1, 64)+" m away; measure from the near end, or take it out"))
 		}
@@ -510,6 +513,10 @@ func aimPath(v *codec.Value) (answer, *Problem) {
 			codec.M("knife_edge_loss_db", codec.Num(c.Loss)),
 		))
 	}
+	clearOrUnknown := codec.Truth(clear)
+	if len(obstacles) == 0 {
+		clearOrUnknown = codec.Nothing()
+	}
 	out := codec.Obj(
 		codec.M("wavelength_m", codec.Num(p.Wavelength)),
 		codec.M("k_factor", codec.Num(p.K)),
@@ -518,7 +525,7 @@ func aimPath(v *codec.Value) (answer, *Problem) {
 		codec.M("obstacles", list),
 		codec.M("diffraction_loss_db", codec.Num(diffraction)),
 		codec.M("diffraction_method", codec.Str(method)),
-		codec.M("clear", codec.Truth(clear)),
+		codec.M("clear", clearOrUnknown),
 		codec.M("expected_level_dbm", codec.Nothing()),
 		codec.M("expected_levels_dbm", codec.Nothing()),
 		codec.M("u_db", codec.Nothing()),

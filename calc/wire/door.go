@@ -33,6 +33,8 @@ func operations() []operation {
 	return slices.Concat(
 		polarOperations(),
 		spacingOperations(),
+		aimOperations(),
+		peakOperations(),
 		mountOperations(),
 	)
 }

@@ -1,0 +1,241 @@
+package wire
+
+import (
+	"math"
+
+	"crossplumb/calc/aim"
+	"crossplumb/calc/codec"
+	"crossplumb/calc/peak"
+)
+
+func peakOperations() []operation {
+	return []operation{
+		{"peak.fit", peakFit, []string{"main-lobe form −12(θ/θ₃dB)² of 3GPP TR 38.901 table 7.3-1", "Balanis, Antenna Theory, tables 12.1 and 12.2 (side lobes of uniform apertures)", "JCGM 100:2008", "odds of a side lobe beforehand 0.3, doubt of a beamwidth 10 %: common practice"}},
+		{"tilt.twoface", tiltTwoFace, []string{"reversal of an instrument, common practice of surveying", "JCGM 100:2008", "floor 0.1°: common practice"}},
+		{"tilt.face", tiltFace, []string{"variance of the mean of a first-order autoregressive series", "limits of shake, sway and stillness: common practice"}},
+	}
+}
+
+// receivedLevel is the range of a received level. A radio overloads long before 0
+// dBm, so a positive one has lost its sign.
+var receivedLevel = codec.Range{Min: -150, Max: 0, Suggestion: "received levels are negative dBm: −55, not 55"}
+
+// maxReadings bounds the readings of one search and of one face.
+const (
+	maxLevels  = 500
+	maxSamples = 20000
+)
+
+func peakFit(v *codec.Value) (answer, *Problem) {
+	f := codec.Open(v)
+	angles := f.Numbers("angles_deg", 1, maxLevels, codec.Range{Min: -360, Max: 360})
+	levels := f.Numbers("levels_dbm", 1, maxLevels, receivedLevel)
+	beamwidth := f.MaybeNumber("beamwidth_deg", codec.Range{Min: 0.05, Max: 180, Suggestion: "the half-power beamwidth in the plane of the search"})
+	expected := f.MaybeNumber("expected_level_dbm", receivedLevel)
+	expectedDoubt := f.MaybeNumber("expected_u_db", codec.Above(0, 40))
+	levelDoubt := f.NumberOr("level_u_db", peak.DefaultLevelDoubt, codec.Range{Min: 0.05, Max: 20, Suggestion: "the standard uncertainty of one reading"})
+	off := f.Maybe("power_control_off")
+	controlled, problem := off.AsTruth()
+	f.Fail(problem)
+	if !v.Described() && f.Problem() == nil {
+		switch {
+		case len(angles) != len(levels):
+			f.Fail(f.Refuse("levels_dbm", codec.Impossible, "there must be one level for each angle"))
+		case off != nil && !controlled:
+			f.Fail(f.Refuse("power_control_off", codec.Impossible, "automatic transmit power control holds the level while you turn, so levels mean nothing: switch it off at both ends first"))
+		case expected != nil && expectedDoubt == nil:
+			f.Fail(f.Refuse("expected_u_db", codec.MissingField, "an expected level needs its standard uncertainty"))
+		case expected == nil && expectedDoubt != nil:
+			f.Fail(f.Refuse("expected_level_dbm", codec.MissingField, "a doubt without the expected level says nothing; give both or neither"))
+		}
+	}
+	if p := f.Done(); p != nil {
+		return nil, p
+	}
+	if v.Described() {
+		angles, levels = []float64{0}, []float64{-50}
+	}
+	s := peak.Search{Levels: levels, LevelDoubt: levelDoubt, Expected: expected, Angles: make([]float64, len(angles))}
+	negative := false
+	for i, a := range angles {
+		s.Angles[i] = a * degree
+		negative = negative || a < 0
+	}
+	if beamwidth != nil {
+		s.Beamwidth = *beamwidth * degree
+	}
+	if expectedDoubt != nil {
+		s.ExpectedDoubt = *expectedDoubt
+	}
+	r := s.Fit()
+	// The answer counts round the circle as the readings did.
+	show := func(a float64) *codec.Value {
+		if negative {
+			return deg(aim.HalfTurn(a))
+		}
+		return deg(aim.Turn(a))
+	}
+	out := codec.Obj(
+		codec.M("peak_deg", codec.Nothing()),
+		codec.M("peak_u_deg", codec.Nothing()),
+		codec.M("peak_level_dbm", codec.Num(r.Level)),
+		codec.M("peak_level_u_db", codec.Num(r.LevelDoubt)),
+		codec.M("from_last_deg", codec.Nothing()),
+		codec.M("width_deg", codec.Nothing()),
+		codec.M("width_u_deg", codec.Nothing()),
+		codec.M("lobe", codec.Str(r.Lobe)),
+		codec.M("odds_main", codec.Num(r.MainOdds)),
+		codec.M("noise_db", codec.Num(r.Noise)),
+	)
+	if r.Peak != nil {
+		out.Set("peak_deg", show(*r.Peak))
+		out.Set("peak_u_deg", deg(r.PeakDoubt))
+		out.Set("from_last_deg", deg(aim.HalfTurn(*r.Peak-s.Angles[len(angles)-1])))
+		out.Set("width_deg", deg(*r.Width))
+		out.Set("width_u_deg", deg(r.WidthDoubt))
+	}
+	used, curve := codec.Seq(), codec.Seq()
+	for _, u := range r.Used {
+		used.Items = append(used.Items, codec.Truth(u))
+	}
+	if r.Peak != nil {
+		const steps = 24
+		for i := -steps / 2; i <= steps/2; i++ {
+			a := *r.Peak + float64(i)/steps*1.5*(*r.Width)
+			level, _ := r.LevelAt(a)
+			curve.Items = append(curve.Items, codec.Obj(codec.M("angle_deg", show(a)), codec.M("level_dbm", codec.Num(level))))
+		}
+	}
+	out.Set("used", used)
+	out.Set("curve", curve)
+	take := codec.Seq()
+	want := func(code, text string) {
+		take.Items = append(take.Items, codec.Obj(codec.M("code", codec.Str(code)), codec.M("text", codec.Str(text))))
+	}
+	if off == nil {
+		want("power control", "Is automatic transmit power control off at both ends? While it is on, levels mean nothing.")
+	}
+	for _, w := range r.Wants {
+		want(string(w), wantText(w))
+	}
+	if expected != nil && r.Level > *expected+3*math.Hypot(*expectedDoubt, r.LevelDoubt) {
+		want("too high", "The level is higher than expected by more than its doubt: check transmit power, gains and distance that the expected level was made from.")
+	}
+	out.Set("take_more", take)
+	out.Set("enough", codec.Truth(len(r.Wants) == 0))
+	return out, nil
+}
+
+func wantText(w peak.Want) string {
+	switch w {
+	case peak.WantMore:
+		return "Too few readings: take at least five within 6 dB of the best, at three angles or more."
+	case peak.WantBothSides:
+		return "The peak is not boxed in: go on past it, at least two readings on each side."
+	case peak.WantWider:
+		return "Too flat: step wider, until the level is 3 dB lower on both sides."
+	case peak.WantCalm:
+		return "Too noisy: read each angle again, wait for the wind to drop."
+	case peak.WantBeamwidth:
+		return "Give the half-power beamwidth of the antenna in this plane: its width tells a main lobe from a side lobe."
+	case peak.WantLevel:
+		return "Give the expected level with its doubt: a side lobe is at least 13 dB low."
+	case peak.WantFarther:
+		return "This may be a side lobe: sweep two beamwidths to each side and look for a higher peak."
+	}
+	return string(w)
+}
+
+// faceAngle is what a level or a phone reads on one face.
+var faceAngle = codec.Range{Min: -90, Max: 90, Suggestion: "read from the nearer of level and plumb, so that it stays within ±90°"}
+
+func tiltTwoFace(v *codec.Value) (answer, *Problem) {
+	f := codec.Open(v)
+	spread := codec.Range{Min: 0, Max: 45, Suggestion: "the standard deviation of the readings with this face"}
+	count := codec.Range{Min: 1, Max: 1e6, Suggestion: "how many independent readings"}
+	read := func(face string) peak.Face {
+		return peak.Face{
+			Mean:   f.Number("face_"+face+"_deg", faceAngle) * degree,
+			Spread: f.NumberOr("spread_"+face+"_deg", 0, spread) * degree,
+			Count:  f.NumberOr("count_"+face, 1, count),
+		}
+	}
+	a, b := read("a"), read("b")
+	tilt := f.MaybeNumber("edge_tilt_deg", codec.Between(-80, 80))
+	if p := f.Done(); p != nil {
+		return nil, p
+	}
+	angle, bias, u := peak.TwoFace(a, b)
+	out := codec.Obj(
+		codec.M("tilt_deg", deg(angle)),
+		codec.M("bias_deg", deg(bias)),
+		codec.M("u_deg", deg(u)),
+		codec.M("skew_deg", codec.Nothing()),
+		codec.M("skew_u_deg", codec.Nothing()),
+	)
+	if tilt != nil {
+		skew, ok := aim.SkewFromEdge(angle, *tilt*degree)
+		if !ok {
+			return nil, f.Refuse("edge_tilt_deg", codec.Impossible, "no skew reads this much across an edge that is tilted so far; check both")
+		}
+		// dskew/dlevel = cos level / (cos tilt cos skew)
+		grown := u * math.Cos(angle) / math.Max(1e-3, math.Cos(*tilt*degree)*math.Cos(skew))
+		out.Set("skew_deg", deg(skew))
+		out.Set("skew_u_deg", deg(grown))
+	}
+	return out, nil
+}
+
+func tiltFace(v *codec.Value) (answer, *Problem) {
+	f := codec.Open(v)
+	times := f.Numbers("t_s", 1, maxSamples, codec.Range{Min: -1e9, Max: 1e9, Suggestion: "seconds"})
+	angles := f.Numbers("angles_deg", 1, maxSamples, faceAngle)
+	gravity := f.MaybeNumbers("g_m_s2", 1, maxSamples, codec.Range{Min: 0, OpenMin: true, Max: 200, Suggestion: "the length of the acceleration, gravity in it"})
+	if !v.Described() && f.Problem() == nil {
+		if len(times) != len(angles) {
+			f.Fail(f.Refuse("angles_deg", codec.Impossible, "there must be one angle for each time"))
+		}
+		if gravity != nil && len(gravity) != len(angles) {
+			f.Fail(f.Refuse("g_m_s2", codec.Impossible, "there must be one acceleration for each angle, or none at all"))
+		}
+		for i := 1; i < len(times) && f.Problem() == nil; i++ {
+			if times[i] < times[i-1] {
+				f.Fail(f.Refuse("t_s", codec.Impossible, "the times must not run backwards"))
+			}
+		}
+	}
+	if p := f.Done(); p != nil || v.Described() {
+		return codec.Obj(), p
+	}
+	samples := make([]peak.Sample, len(times))
+	for i := range samples {
+		samples[i] = peak.Sample{Time: times[i], Angle: angles[i] * degree}
+		if gravity != nil {
+			samples[i].Gravity = gravity[i]
+		}
+	}
+	h, ok := peak.Hold(samples)
+	if !ok {
+		return nil, f.Refuse("g_m_s2", codec.Impossible, "every sample was shaken: rest the phone on the antenna and take your hand away")
+	}
+	text := "Enough."
+	switch {
+	case h.Enough:
+	case h.Duration < peak.StillSeconds:
+		text = "Hold on: three seconds if the mast is still, twenty if it sways."
+	default:
+		text = "The mast sways or the phone moves: hold on for twenty seconds, or type the reading of a level."
+	}
+	return codec.Obj(
+		codec.M("mean_deg", deg(h.Mean)),
+		codec.M("spread_deg", deg(h.Spread)),
+		codec.M("count", codec.Num(h.Count)),
+		codec.M("used", codec.Int(h.Used)),
+		codec.M("rejected", codec.Int(h.Shaky)),
+		codec.M("duration_s", codec.Num(h.Duration)),
+		codec.M("drift_deg", deg(h.Drift)),
+		codec.M("still", codec.Truth(h.Still)),
+		codec.M("enough", codec.Truth(h.Enough)),
+		codec.M("text", codec.Str(text)),
+	), nil
+}

@@ -62,7 +62,7 @@ export function MountDrawing(props: MountDrawingProps) {
             paper={paper}
             selected={selected === antenna.id}
             compact={compact ?? false}
-            room={roomFor(antenna, antennas, layout, paper)}
+            room={labelRoom(antenna, antennas, layout, paper)}
           />
         ))}
         {dimensions && (
@@ -329,23 +329,27 @@ function Dimensions(props: {
   const across: Joined[] = [];
   const upwards: Joined[] = [];
   const above = callout === 'under';
+  let inRow = antennas;
+  let inColumn = antennas;
   if (layout === 'row') across.push(...neighbours(antennas, spacings, 'right_mm'));
   if (layout === 'column') upwards.push(...neighbours(antennas, spacings, 'up_mm'));
   if (layout === 'field') {
+    const slack = Math.max(...antennas.map((a) => Math.max(a.width_mm, a.height_mm))) / 2;
     const row = above ? Math.max(...antennas.map((a) => a.placed.up_mm)) : Math.min(...antennas.map((a) => a.placed.up_mm));
     const column = Math.max(...antennas.map((a) => a.placed.right_mm));
-    const slack = Math.max(...antennas.map((a) => Math.max(a.width_mm, a.height_mm))) / 2;
-    across.push(...neighbours(antennas.filter((a) => Math.abs(a.placed.up_mm - row) <= slack), spacings, 'right_mm'));
-    upwards.push(...neighbours(antennas.filter((a) => Math.abs(a.placed.right_mm - column) <= slack), spacings, 'up_mm'));
+    inRow = antennas.filter((a) => Math.abs(a.placed.up_mm - row) <= slack);
+    inColumn = antennas.filter((a) => Math.abs(a.placed.right_mm - column) <= slack);
+    across.push(...neighbours(inRow, spacings, 'right_mm'));
+    upwards.push(...neighbours(inColumn, spacings, 'up_mm'));
   }
   const tooClose = (list: Joined[], along: 'right_mm' | 'up_mm', least: number) =>
     list.some(({ from, to }) => Math.abs(to.placed[along] - from.placed[along]) * paper.scale < least);
-  const acrossShown = tooClose(across, 'right_mm', 76) ? ends(antennas, spacings, 'right_mm') : across;
-  const upShown = tooClose(upwards, 'up_mm', 2 * line + 4) ? ends(antennas, spacings, 'up_mm') : upwards;
+  const acrossShown = tooClose(across, 'right_mm', 76) ? ends(inRow, spacings, 'right_mm') : across;
+  const upShown = tooClose(upwards, 'up_mm', 2 * line + 4) ? ends(inColumn, spacings, 'up_mm') : upwards;
   const low = Math.max(...antennas.map((a) => paper.y(a.placed.up_mm) + (turnedHeight(a) * paper.scale) / 2));
   const high = Math.min(...antennas.map((a) => paper.y(a.placed.up_mm) - (turnedHeight(a) * paper.scale) / 2));
   const far = Math.max(...antennas.map((a) => paper.x(a.placed.right_mm) + (turnedWidth(a) * paper.scale) / 2)) + 18;
-  const y = above ? high - 2 * line - 12 : low + (compact ? 18 : line + 20);
+  const y = above ? high - 40 : low + (compact ? 18 : line + 20);
   return (
     <g aria-hidden="true">
       {acrossShown.map(({ from, to, spacing }) => {
@@ -366,11 +370,11 @@ function Dimensions(props: {
               </text>
             ) : (
               <>
-                <text class="over strong" x={middle} y={y + line * 0.8} text-anchor="middle" dominant-baseline="central">
+                <text class="over strong" x={middle} y={y + line * (above ? -1.75 : 0.8)} text-anchor="middle" dominant-baseline="central">
                   {millimetres(spacing)}
                 </text>
                 {!compact && (
-                  <text class="over" x={middle} y={y + line * 1.75} text-anchor="middle" dominant-baseline="central">
+                  <text class="over" x={middle} y={y + line * (above ? -0.8 : 1.75)} text-anchor="middle" dominant-baseline="central">
                     {waves(spacing)}
                   </text>
                 )}
@@ -545,6 +549,16 @@ function roomFor(antenna: DrawnAntenna, antennas: DrawnAntenna[], layout: Layout
   const others = antennas.filter((a) => a !== antenna && Math.abs(a.placed.up_mm - antenna.placed.up_mm) < (a.height_mm + antenna.height_mm) / 2);
   const gaps = others.map((a) => Math.abs(a.placed.right_mm - antenna.placed.right_mm) * paper.scale);
   return gaps.length > 0 ? Math.min(...gaps) : paper.width;
+}
+
+/** Room across for the figure under an antenna; none where the next one below leaves less than two lines. */
+function labelRoom(antenna: DrawnAntenna, antennas: DrawnAntenna[], layout: Layout, paper: Paper): number {
+  const foot = antenna.placed.up_mm - turnedHeight(antenna) / 2;
+  const gaps = antennas
+    .filter((a) => a !== antenna && a.placed.up_mm < antenna.placed.up_mm && Math.abs(a.placed.right_mm - antenna.placed.right_mm) < (a.width_mm + antenna.width_mm) / 2)
+    .map((a) => (foot - (a.placed.up_mm + turnedHeight(a) / 2)) * paper.scale);
+  if (gaps.length > 0 && Math.min(...gaps) < 2.4 * line) return 0;
+  return roomFor(antenna, antennas, layout, paper);
 }
 
 /** A part to touch: the antenna and the paper round it, up to half way to its neighbours, at least a gloved fingertip where there is room. */

@@ -52,7 +52,7 @@ export function limitDoubted(name: LimitName, value: number, u: number | null): 
   return withDoubt(value * manner.factor, u ? u * manner.factor : null, manner.decimals) + manner.unit;
 }
 
-/** Three ways a limit can stand, by the guard band that the verdict itself uses (0.95 and 0.05; PHYSICS: JCGM 106). */
+/** Three ways a limit can stand, by the guard band that the verdict itself uses (0.95 and 0.05; JCGM 106:2012). */
 export type Standing = 'met' | 'missed' | 'unsure';
 
 export function standingOf(outcome: LimitOutcome): Standing {
@@ -80,7 +80,8 @@ export function limitScale(outcome: LimitOutcome): LimitScale {
     .map((v) => v * manner.factor);
   const least = Math.min(...shown);
   const most = Math.max(...shown);
-  const from = least < manner.from ? least - roundUp((most - least) * 0.1) : manner.from;
+  // What cannot be negative has no line below nought, whatever its doubt says; cross-talk can.
+  const from = outcome.name === 'crosstalk_db' && least < 0 ? -roundUp(-least) : manner.from;
   let to = manner.to ?? roundUp(Math.max(most + (most - from) * 0.12, manner.from + (outcome.limit * manner.factor - manner.from) * 1.3));
   if (to < most) to = roundUp(most);
   if (!(to > from)) to = from + 1;

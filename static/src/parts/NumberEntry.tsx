@@ -19,6 +19,8 @@ export interface NumberEntryProps {
   /** "decimal" brings up the phone's own keys; "none" where the page's own keypad is on the screen. */
   keys?: 'decimal' | 'none';
   onFocus?: () => void;
+  /** The page's own keys write into this field. */
+  inUse?: boolean;
   inputRef?: Ref<HTMLInputElement>;
   disabled?: boolean;
 }
@@ -32,7 +34,7 @@ export function NumberEntry(props: NumberEntryProps) {
         {props.label}
         <span class="spoken">, {props.unitSpoken ?? props.unit}</span>
       </label>
-      <div class={`entry${props.big ? ' big' : ''}${error ? ' wrong' : ''}`}>
+      <div class={`entry${props.big ? ' big' : ''}${props.inUse ? ' in-use' : ''}${error ? ' wrong' : ''}`}>
         <input
           id={id}
           ref={props.inputRef}

@@ -1,0 +1,16 @@
+// Where a job should be and is not, or is not looked up yet.
+import { Button } from '../parts/Button';
+import { t } from '../words/words';
+import { Page } from './Page';
+
+export function Gone({ looking }: { looking: boolean }) {
+  if (looking) return <p class="opening">{t('loading')}</p>;
+  return (
+    <Page title={t('jobs.title')} backHref="#/">
+      <p>{t('job.gone')}</p>
+      <Button href="#/" kind="first" wide>
+        {t('job.to-jobs')}
+      </Button>
+    </Page>
+  );
+}

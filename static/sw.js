@@ -26,9 +26,8 @@ self.addEventListener('message', (event) => {
   if (event.data === 'take over') self.skipWaiting(); // sent only after a person said yes
   if (event.data === 'ready?') {
     const answer = async () => {
-      const kept = await (await caches.open(OWN)).keys();
-      const paths = new Set(kept.map((request) => new URL(request.url).pathname));
-      event.ports[0].postMessage({ version: self.precache.version, ready: self.precache.files.every((file) => paths.has(file)) });
+      const kept = await Promise.all(self.precache.files.map(own));
+      event.ports[0].postMessage({ version: self.precache.version, ready: kept.every(Boolean) });
     };
     event.waitUntil(answer());
   }
@@ -51,13 +50,14 @@ self.addEventListener('fetch', (event) => {
   }
 });
 
-async function own(path) {
-  return (await caches.open(OWN)).match(path);
+// By name: caches.open would make an empty cache again after ?no-sw has taken it away.
+function own(path) {
+  return caches.match(path, { cacheName: OWN });
 }
 
 async function before(path) {
   for (const name of await caches.keys()) {
-    const file = name.startsWith(PREFIX) && (await (await caches.open(name)).match(path));
+    const file = name.startsWith(PREFIX) && (await caches.match(path, { cacheName: name }));
     if (file) return file;
   }
 }

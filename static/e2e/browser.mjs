@@ -12,9 +12,9 @@ const root = path.join(path.dirname(fileURLToPath(import.meta.url)), '..', '..')
 const pictures = path.join(process.env.ARTEFACTS ?? path.join(root, 'artefacts'), 'screens');
 
 /** A browser with a profile of its own, on disk, so that it can be closed or killed and opened again. */
-export async function openProfile(dir, viewport, options = {}) {
+export async function openProfile(t, dir, viewport, options = {}) {
   const touch = viewport.width < 700;
-  return chromium.launchPersistentContext(dir, {
+  const context = await chromium.launchPersistentContext(dir, {
     executablePath: process.env.CHROMIUM ?? '/usr/bin/chromium',
     viewport,
     hasTouch: touch,
@@ -34,12 +34,15 @@ export async function openProfile(dir, viewport, options = {}) {
     ],
     ...options,
   });
+  context.setDefaultTimeout(20_000);
+  t.after(() => context.close());
+  return context;
 }
 
-/** An empty folder that is gone when the test is over. */
-export function temporary(t, name) {
+/** An empty folder that is gone when the process ends: only then has nothing a file open in it any more. */
+export function temporary(name) {
   const dir = mkdtempSync(path.join(os.tmpdir(), `crossplumb-${name}-`));
-  t.after(() => rmSync(dir, { recursive: true, force: true, maxRetries: 5, retryDelay: 200 }));
+  process.on('exit', () => rmSync(dir, { recursive: true, force: true, maxRetries: 5, retryDelay: 200 }));
   return dir;
 }
 

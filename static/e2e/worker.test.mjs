@@ -8,11 +8,8 @@ import { precache, Shelf } from './shelf.mjs';
 async function phone(t) {
   const shelf = new Shelf();
   const address = await shelf.open();
-  const context = await openProfile(temporary(t, 'worker'), PHONE);
-  t.after(async () => {
-    await context.close();
-    await shelf.close();
-  });
+  t.after(() => shelf.close());
+  const context = await openProfile(t, temporary('worker'), PHONE);
   const page = context.pages()[0] ?? (await context.newPage());
   return { shelf, address, context, page };
 }
@@ -44,7 +41,7 @@ const reckon = (page, op, input) =>
     [precache().files.find((file) => file.startsWith('/gen/worker-')), { id: 1, op, json: JSON.stringify(input) }],
   );
 
-test('with the server dead the page opens again, whole, and reckons', async (t) => {
+test('with the server dead the page opens again, whole, and reckons', { timeout: 60_000 }, async (t) => {
   const { shelf, address, page } = await phone(t);
   await page.goto(address);
   await controlled(page);
@@ -66,7 +63,7 @@ test('with the server dead the page opens again, whole, and reckons', async (t) 
   assert.deepEqual(errors.filter((text) => !text.includes('ERR_CONNECTION_REFUSED')), [], 'nothing but the dead server');
 });
 
-test('every file of the list is there', async (t) => {
+test('every file of the list is there', { timeout: 60_000 }, async (t) => {
   const shelf = new Shelf();
   const address = await shelf.open();
   t.after(() => shelf.close());
@@ -76,7 +73,7 @@ test('every file of the list is there', async (t) => {
   for (const file of files) assert.equal((await fetch(address + file)).status, 200, file);
 });
 
-test('one missing file: the phone is not ready, and says so', async (t) => {
+test('one missing file: the phone is not ready, and says so', { timeout: 60_000 }, async (t) => {
   const { shelf, address, page } = await phone(t);
   shelf.missing.add(precache().files.find((file) => file.endsWith('.wasm')));
   await page.goto(address);
@@ -90,7 +87,7 @@ test('one missing file: the phone is not ready, and says so', async (t) => {
   assert.equal(await page.evaluate(() => navigator.serviceWorker.controller), null);
 });
 
-test('a file that the browser dropped makes the phone not ready', async (t) => {
+test('a file that the browser dropped makes the phone not ready', { timeout: 60_000 }, async (t) => {
   const { address, page } = await phone(t);
   await page.goto(address);
   await controlled(page);
@@ -103,7 +100,7 @@ test('a file that the browser dropped makes the phone not ready', async (t) => {
   assert.equal(await askReady(page), false);
 });
 
-test('a new version waits, whole, until a person takes it; then all of it is new', async (t) => {
+test('a new version waits, whole, until a person takes it; then all of it is new', { timeout: 60_000 }, async (t) => {
   const { shelf, address, page } = await phone(t);
   await page.goto(address);
   await controlled(page);
@@ -131,7 +128,7 @@ test('a new version waits, whole, until a person takes it; then all of it is new
   assert.equal(await release(page), 'SECONDVERSION', 'and without a server too');
 });
 
-test('/api is never answered from the phone', async (t) => {
+test('/api is never answered from the phone', { timeout: 60_000 }, async (t) => {
   const { shelf, address, page } = await phone(t);
   await page.goto(address);
   await controlled(page);
@@ -146,7 +143,7 @@ test('/api is never answered from the phone', async (t) => {
   assert.deepEqual(cached.filter((url) => url.includes('/api')), []);
 });
 
-test('?no-sw takes the worker and its files away and leaves the log', async (t) => {
+test('?no-sw takes the worker and its files away and leaves the log', { timeout: 60_000 }, async (t) => {
   const { address, page } = await phone(t);
   await page.goto(address);
   await controlled(page);

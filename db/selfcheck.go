@@ -23,6 +23,7 @@ func (s *Store) selfCheck(ctx context.Context) error {
 	}
 	if err := checkPool(ctx, s.write, "writing", 1, map[string]string{
 		"journal_mode": "wal", "synchronous": "2", "foreign_keys": "1", "busy_timeout": "5000", "query_only": "0",
+		"recursive_triggers": "1",
 	}); err != nil {
 		return err
 	}

@@ -46,11 +46,12 @@ func Open(ctx context.Context, cfg Config) (*Store, error) {
 
 // The driver sends these to every connection it opens; that is why they stand in the name and not in an Exec.
 // _txlock=immediate: a transaction that reads first and writes later fails at once when another wrote in between, and
-// no timeout helps against that.
+// no timeout helps against that. _recursive_triggers=1: else INSERT OR REPLACE would go past the trigger that keeps
+// entries from being removed.
 var (
 	writerOptions = url.Values{
 		"_journal_mode": {"WAL"}, "_synchronous": {"FULL"}, "_busy_timeout": {"5000"},
-		"_foreign_keys": {"on"}, "_txlock": {"immediate"},
+		"_foreign_keys": {"on"}, "_txlock": {"immediate"}, "_recursive_triggers": {"1"},
 	}
 	readerOptions = url.Values{
 		"_journal_mode": {"WAL"}, "_synchronous": {"FULL"}, "_busy_timeout": {"5000"},

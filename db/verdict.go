@@ -11,8 +11,8 @@ type Verdict struct {
 	Mount       string
 	ReadingsSeq int64
 	Version     string
-	Word        string // "" where there is none, with the problem in Answer
-	Answer      string // JSON
+	Word        string // "" where lists are to show none
+	Answer      string // JSON: a verdict or a problem
 }
 
 // VerdictOf is the stored verdict, ErrNotFound when there is none.

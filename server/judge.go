@@ -102,12 +102,14 @@ func JudgeMount(mount string, sheet []byte, log []db.LogEntry) ([]byte, *wire.Pr
 	return wire.Reckon("mount.verdict", folded)
 }
 
-// wordOf reads the word of a verdict, "" where there is none.
+// wordOf reads the word that a list shows for a mount: "" where there is no verdict, and also where nothing was read
+// yet and the plan alone was judged.
 func wordOf(verdict rawJSON) string {
 	var head *struct {
-		Word string `json:"word"`
+		Word   string `json:"word"`
+		Judged string `json:"judged"`
 	}
-	if json.Unmarshal(verdict, &head) != nil || head == nil {
+	if json.Unmarshal(verdict, &head) != nil || head == nil || head.Judged == "planned" {
 		return ""
 	}
 	return head.Word
@@ -117,13 +119,11 @@ func wordOf(verdict rawJSON) string {
 func (s *Server) verdict(ctx context.Context, job db.Job, mount string, sheet []byte) (rawJSON, *wire.Problem) {
 	kept, err := s.cfg.Store.VerdictOf(ctx, job.ID, mount)
 	if err == nil && kept.ReadingsSeq == job.ReadingsSeq && kept.Version == wire.Version {
-		if kept.Word != "" {
-			return rawJSON(kept.Answer), nil
-		}
 		var p calcProblem
 		if json.Unmarshal([]byte(kept.Answer), &p) == nil && p.Code != "" {
 			return nil, &wire.Problem{Code: p.Code, Field: p.Field, Message: p.Message}
 		}
+		return rawJSON(kept.Answer), nil
 	}
 	if err != nil && !errors.Is(err, db.ErrNotFound) {
 		s.cfg.Log.Warn("stored verdict not read", slog.String("job", job.ID), slog.String("error", err.Error()))
@@ -136,9 +136,7 @@ func (s *Server) verdict(ctx context.Context, job db.Job, mount string, sheet []
 	if p != nil {
 		keep.Answer = string(p.JSON())
 	} else {
-		if keep.Word = wordOf(out); keep.Word == "" {
-			return nil, &wire.Problem{Code: "internal", Message: "the verdict has no word"}
-		}
+		keep.Word = wordOf(out)
 	}
 	if err := s.cfg.Store.KeepVerdict(ctx, keep); err != nil {
 		s.cfg.Log.Warn("verdict not kept", slog.String("job", job.ID), slog.String("error", err.Error()))

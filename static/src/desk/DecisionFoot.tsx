@@ -8,7 +8,7 @@ import { Message } from '../parts/Message';
 import { t } from './words';
 import * as api from './api';
 import { usualCautions } from './cautions';
-import { placeTime, shortHash } from './format';
+import { deskTime, shortHash } from './format';
 import type { Opened } from './JobPageView';
 import type { JobRecord } from './record';
 
@@ -42,7 +42,7 @@ export function DecisionFoot({ opened, record, onStale, onDecided }: Props) {
       <footer class="decision" data-open={false}>
         <p class="decision-facts">
           {page.job.stage === 'signed off' && by !== null
-            ? t('desk.signed-by', { name: by.by, when: placeTime(by.at) })
+            ? t('desk.signed-by', { name: by.by, when: deskTime(by.at) })
             : t(`desk.nothing-to-decide.${page.job.stage}`)}
           {log !== null && <> · {t('desk.head', { hash: shortHash(log.head.hash) })}</>}
         </p>

@@ -3,7 +3,8 @@
 import type { RefObject } from 'preact';
 import type { JobPage } from '../types';
 import { t } from './words';
-import { day, deskTime } from './format';
+import { day, deskTime, placeTime } from './format';
+import { crewName, whatOf } from './names';
 import type { JobRecord } from './record';
 import { hrefOf, type Tab } from './route';
 import { WordMark } from '../parts/WordMark';
@@ -21,8 +22,8 @@ export function JobHead({ heading, page, record, shown, tab }: Props) {
   const facts = [
     ...(page.mounts.length === 1 ? page.mounts.map((m) => t('desk.mount', { name: m.name })) : []),
     job.visit_on === null ? t('desk.no-visit') : t('desk.visit', { day: day(job.visit_on) }),
-    t('desk.crew', { crew: job.crew }),
-    t('desk.phones', { n: record.phones.length }),
+    crewName(job.crew),
+    ...(record.phones.length > 0 ? [t('desk.phones', { n: record.phones.length })] : []),
     t('desk.entries', { n: job.entries }),
   ];
   return (
@@ -31,10 +32,10 @@ export function JobHead({ heading, page, record, shown, tab }: Props) {
         <h1 tabIndex={-1} ref={heading}>
           {job.site}
         </h1>
-        <p class="job-what">{job.title}</p>
+        <p class="job-what">{whatOf(job)}</p>
         <p class="stage" data-stage={job.stage}>
           {t(`desk.stage.${job.stage}`)}
-          {job.stage === 'handed in' && job.handed_in_at !== null && <> {deskTime(job.handed_in_at)}</>}
+          {job.stage === 'handed in' && job.handed_in_at !== null && <> {placeTime(job.handed_in_at)}</>}
         </p>
       </div>
       <p class="job-facts">{facts.join(' · ')}</p>
@@ -42,7 +43,7 @@ export function JobHead({ heading, page, record, shown, tab }: Props) {
         <p class="decided" data-decision="sign off">
           <strong>
             {t('desk.signed-by', { name: record.signedOff.by, when: deskTime(record.signedOff.at) })}
-          </strong>
+          </strong>{' '}
           {record.signedOff.body.remark && <span class="remark">{record.signedOff.body.remark}</span>}
         </p>
       )}

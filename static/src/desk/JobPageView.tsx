@@ -81,6 +81,13 @@ export function JobPageView({ id, mount, tab, newest, onDecided }: Props) {
     );
   }
 
+  // After a decision, or one that was refused, the reader stands at the head again: that is where it is said.
+  const again = async () => {
+    await load();
+    onDecided();
+    scrollTo(0, 0);
+    heading.current?.focus({ preventScroll: true });
+  };
   const { page } = opened;
   const record = recordOf(page);
   const shown = page.mounts.find((m) => m.id === mount) ?? page.mounts[0];
@@ -109,7 +116,7 @@ export function JobPageView({ id, mount, tab, newest, onDecided }: Props) {
       ))}
       <VisitSection page={page} record={record} />
       <LogSection opened={opened} record={record} />
-      <DecisionFoot opened={opened} record={record} onStale={load} onDecided={() => void load().then(onDecided)} />
+      <DecisionFoot opened={opened} record={record} onStale={again} onDecided={() => void again()} />
     </article>
   );
 }

@@ -43,7 +43,7 @@ export function JudgedWith({ sheet, verdict }: Props) {
           <dd>
             <strong>{t(verdict.surroundings.sight ? 'desk.sight' : 'desk.no-sight')}</strong> ·{' '}
             {verdict.surroundings.text}
-            {surroundings.class && (
+            {surroundings.class && !verdict.surroundings.text.includes(surroundings.class.edition) && (
               <>
                 {' '}
                 · {t('desk.edition', { standard: surroundings.class.standard, edition: surroundings.class.edition })}

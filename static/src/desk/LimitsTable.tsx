@@ -16,30 +16,38 @@ export function LimitsTable({ sheet, verdict }: Props) {
   const planned = new Map(states.planned.values.map((v) => [v.name, v.value]));
   const of = (state: 'as_found' | 'as_left', name: LimitName) =>
     states[state]?.limits.find((l) => l.name === name) ?? null;
+  // Before the first reading there is nothing to doubt: the plan alone stands beside the limits.
+  const read = verdict.judged !== 'planned';
   const listed = new Set(verdict.limits.map((l) => l.name));
   const aside = verdict.not_judged.filter((n) => !listed.has(n.limit));
   return (
-    <table class="limits">
-      <caption>{t('desk.limits.caption', { state: t(`desk.state.${verdict.judged}`) })}</caption>
+    <table class={read ? 'limits' : 'limits short'}>
+      <caption>
+        {read ? t('desk.limits.caption', { state: t(`desk.state.${verdict.judged}`) }) : t('desk.limits.caption-planned')}
+      </caption>
       <thead>
         <tr>
           <th scope="col">{t('desk.limits.limit')}</th>
           <th scope="col" class="number">
             {t('desk.state.planned')}
           </th>
-          <th scope="col" class="number">
-            {t('desk.state.as_found')}
-          </th>
-          <th scope="col" class="number">
-            {t('desk.state.as_left')}
-          </th>
-          <th scope="col" class="number">
-            {t('desk.limits.doubt')}
-          </th>
-          <th scope="col">{t('desk.limits.line')}</th>
-          <th scope="col" class="number">
-            {t('desk.limits.met')}
-          </th>
+          {read && (
+            <>
+              <th scope="col" class="number">
+                {t('desk.state.as_found')}
+              </th>
+              <th scope="col" class="number">
+                {t('desk.state.as_left')}
+              </th>
+              <th scope="col" class="number">
+                {t('desk.limits.doubt')}
+              </th>
+              <th scope="col">{t('desk.limits.line')}</th>
+              <th scope="col" class="number">
+                {t('desk.limits.met')}
+              </th>
+            </>
+          )}
         </tr>
       </thead>
       <tbody>
@@ -52,26 +60,13 @@ export function LimitsTable({ sheet, verdict }: Props) {
               </span>
               <Reason sheet={sheet} name={limit.name} />
             </th>
-            <Value label={t('desk.state.planned')} name={limit.name} value={planned.get(limit.name) ?? null} />
-            <Outcome label={t('desk.state.as_found')} name={limit.name} outcome={of('as_found', limit.name)} />
-            <Outcome label={t('desk.state.as_left')} name={limit.name} outcome={of('as_left', limit.name)} />
             {limit.applicable && limit.value !== null ? (
               <>
-                <td class="number" data-label={t('desk.limits.doubt')}>
-                  {limit.u === null ? '' : `±\u00a0${limitValue(limit.name, limit.u, limit.u)}`}
-                </td>
-                <td class="line" data-label={t('desk.limits.line')}>
-                  <LimitLine outcome={limit} bare />
-                </td>
-                <td class="number met" data-standing={standingOf(limit)} data-label={t('desk.limits.met')}>
-                  {limit.probability === null ? '' : percent(limit.probability)}
-                  <span class="standing">{t(`standing.${standingOf(limit)}`)}</span>
-                </td>
+                <Value label={t('desk.state.planned')} name={limit.name} value={planned.get(limit.name) ?? null} limit={limit} />
+                {read && <Judged limit={limit} found={of('as_found', limit.name)} left={of('as_left', limit.name)} />}
               </>
             ) : (
-              <td colSpan={3} class="aside">
-                {t('desk.limits.not-judged', { why: limit.why_not ?? '' })}
-              </td>
+              <NotJudged why={limit.why_not ?? verdict.not_judged.find((n) => n.limit === limit.name)?.why ?? ''} />
             )}
           </tr>
         ))}
@@ -81,9 +76,7 @@ export function LimitsTable({ sheet, verdict }: Props) {
               {t(`limit.${n.limit}`)}
               <Reason sheet={sheet} name={n.limit} />
             </th>
-            <td colSpan={6} class="aside">
-              {t('desk.limits.not-judged', { why: n.why })}
-            </td>
+            <NotJudged why={n.why} />
           </tr>
         ))}
       </tbody>
@@ -97,21 +90,60 @@ function Reason({ sheet, name }: { sheet: Sheet; name: LimitName }) {
   return <span class="limit-reason">{reason || t('desk.limits.no-reason')}</span>;
 }
 
-function Value({ label, name, value }: { label: string; name: LimitName; value: number | null }) {
+function NotJudged({ why }: { why: string }) {
   return (
-    <td class="number" data-label={label}>
-      {value === null ? t('desk.limits.nothing') : limitValue(name, value)}
+    <td colSpan={6} class="aside">
+      {t('desk.limits.not-judged', { why })}
+    </td>
+  );
+}
+
+/** As found, as left, and for the state that was judged: doubt, line and probability. */
+function Judged({ limit, found, left }: { limit: LimitOutcome; found: LimitOutcome | null; left: LimitOutcome | null }) {
+  return (
+    <>
+      <Outcome label={t('desk.state.as_found')} name={limit.name} outcome={found} />
+      <Outcome label={t('desk.state.as_left')} name={limit.name} outcome={left} />
+      <td class="number" data-label={t('desk.limits.doubt')}>
+        {limit.u === null ? '' : `±\u00a0${limitValue(limit.name, limit.u, limit.u)}`}
+      </td>
+      <td class="line" data-label={t('desk.limits.line')}>
+        <LimitLine outcome={limit} bare />
+      </td>
+      <td class="number met" data-standing={standingOf(limit)} data-label={t('desk.limits.met')}>
+        {limit.probability === null ? '' : percent(limit.probability)}
+        <span class="standing">{t(`standing.${standingOf(limit)}`)}</span>
+      </td>
+    </>
+  );
+}
+
+interface ValueProps {
+  label: string;
+  name: LimitName;
+  value: number | null;
+  u?: number | null;
+  limit?: LimitOutcome;
+}
+
+/** A value, and in words whether its best estimate misses the limit. */
+function Value({ label, name, value, u, limit }: ValueProps) {
+  const missed =
+    limit !== undefined &&
+    value !== null &&
+    (limit.sense === 'at least' ? value < limit.limit : value > limit.limit);
+  return (
+    <td class="number" data-label={label} data-missed={missed}>
+      {value === null ? t('desk.limits.nothing') : limitValue(name, value, u)}
+      {missed && <span class="missed">{t('desk.limits.missed')}</span>}
     </td>
   );
 }
 
 function Outcome({ label, name, outcome }: { label: string; name: LimitName; outcome: LimitOutcome | null }) {
-  if (outcome === null || outcome.value === null) return <Value label={label} name={name} value={null} />;
-  const missed = outcome.margin !== null && outcome.margin < 0;
-  return (
-    <td class="number" data-label={label} data-missed={missed}>
-      {limitValue(name, outcome.value, outcome.u)}
-      {missed && <span class="missed">{t('desk.limits.missed')}</span>}
-    </td>
+  return outcome === null ? (
+    <Value label={label} name={name} value={null} />
+  ) : (
+    <Value label={label} name={name} value={outcome.value} u={outcome.u} limit={outcome} />
   );
 }

@@ -9,7 +9,7 @@ import type { MountDraft } from './draft';
 import { LimitFields } from './LimitFields';
 import { NumberField } from './NumberField';
 import { PlanCheck, usePlanCheck } from './PlanCheck';
-import { repath, sheetFrom, sheetIn, sheetText, type Template, templates } from './sheets';
+import { repath, sheetFrom, sheetIn, sheetText, type Template, templates, usualLimits } from './sheets';
 import { SurroundingFields } from './SurroundingFields';
 import { TextField } from './TextField';
 import { t } from './words';
@@ -106,7 +106,14 @@ export function MountForm({ mount, place, nameMissing, onChange, onFit, onRemove
                         type="radio"
                         name={id('combining')}
                         checked={sheet.radio.combining === combining}
-                        onChange={() => edit((s) => (s.radio.combining = combining))}
+                        onChange={() =>
+                          edit((s) => {
+                            s.radio.combining = combining;
+                            // Port-tied, cross-talk is what decides: its limit comes along.
+                            const asked = (s.limits ?? []).some((l) => l.name === 'crosstalk_db');
+                            if (!combining && !asked) s.limits = usualLimits(false).slice(0, 1).concat(s.limits ?? []);
+                          })
+                        }
                       />
                       <span>
                         {t(combining ? 'desk.radio.combines' : 'desk.radio.tied')}

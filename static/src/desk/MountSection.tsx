@@ -49,7 +49,7 @@ export function MountSection({ mount, record, shown }: Props) {
         <>
           <StateDrawings sheet={sheet} verdict={verdict} moves={record.moves.filter((m) => m.mount === mount.id)} />
           <LimitsTable sheet={sheet} verdict={verdict} />
-          <Remedies verdict={verdict} />
+          {verdict.judged !== 'planned' && <Remedies verdict={verdict} />}
           <JudgedWith sheet={sheet} verdict={verdict} />
         </>
       )}

@@ -7,6 +7,7 @@ import { Message } from '../parts/Message';
 import { t } from './words';
 import * as api from './api';
 import { deskTime } from './format';
+import { crewName } from './names';
 
 export function PeoplePage({ user }: { user: User }) {
   const [people, setPeople] = useState<Person[] | null>(null);
@@ -141,7 +142,7 @@ function InviteForm({ crews }: { crews: string[] }) {
             <strong>
               {t('desk.invite.made', {
                 role: t(`desk.role.${invitation.role}`),
-                crew: invitation.role === 'climber' ? t('desk.crew', { crew: invitation.crew }) : '',
+                crew: invitation.role === 'climber' ? `, ${crewName(invitation.crew)}` : '',
               })}
             </strong>{' '}
             {t('desk.invite.hand-over')}

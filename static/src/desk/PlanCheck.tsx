@@ -116,15 +116,21 @@ function PlannedValues({ verdict }: { verdict: Verdict }) {
           return (
             <tr key={limit.name}>
               <th scope="row">{t(`limit.${limit.name}`)}</th>
-              <td class="number">
-                {t(`desk.limits.${limit.sense}`, { limit: limitValue(limit.name, limit.limit) })}
-              </td>
-              <td class="number" data-missed={missed}>
-                {value === null || !limit.applicable
-                  ? (limit.why_not ?? t('desk.limits.nothing'))
-                  : limitValue(limit.name, value)}
-                {missed && <span class="missed">{t('desk.limits.missed')}</span>}
-              </td>
+              {value === null || !limit.applicable ? (
+                <td colSpan={2} class="aside">
+                  {t('desk.limits.not-judged', { why: limit.why_not ?? '' })}
+                </td>
+              ) : (
+                <>
+                  <td class="number">
+                    {t(`desk.limits.${limit.sense}`, { limit: limitValue(limit.name, limit.limit) })}
+                  </td>
+                  <td class="number" data-missed={missed}>
+                    {limitValue(limit.name, value)}
+                    {missed && <span class="missed">{t('desk.limits.missed')}</span>}
+                  </td>
+                </>
+              )}
             </tr>
           );
         })}

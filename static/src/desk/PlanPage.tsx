@@ -8,6 +8,7 @@ import type { JobSummary } from '../types';
 import * as api from './api';
 import { dropDraft, type JobDraft, keepDraft, keptDraft, newDraft, newMount } from './draft';
 import { MountForm } from './MountForm';
+import { crewName } from './names';
 import { hrefOf } from './route';
 import { sheetIn } from './sheets';
 import { TextField } from './TextField';
@@ -37,7 +38,7 @@ export function PlanPage({ jobs, onIssued }: Props) {
     return (
       <div class="page plan">
         <h1>{t('desk.issued', { site: issued.site.trim() })}</h1>
-        <p>{t('desk.issued.what', { crew: issued.crew.trim() })}</p>
+        <p>{t('desk.issued.what', { crew: crewName(issued.crew.trim()) })}</p>
         <p class="buttons">
           <Button href={hrefOf({ page: 'queue', tab: 'issued', job: issued.id, mount: null })}>{t('desk.issued.open')}</Button>
           <Button

@@ -1,6 +1,7 @@
 // The list on the left: jobs of one tab, oldest first, each with what its mounts came to.
 
 import type { JobSummary } from '../types';
+import { crewName, whatOf } from './names';
 import { Button } from '../parts/Button';
 import { t } from './words';
 import { day, shortWhen } from './format';
@@ -53,7 +54,7 @@ export function QueueList({ queue, tab, open, search, onSearch }: Props) {
               <span class="queue-site">{job.site}</span>
               <span class="queue-when">{when(job, tab)}</span>
               <span class="queue-what">
-                {job.title} · {t('desk.crew', { crew: job.crew })}
+                {whatOf(job)} · {crewName(job.crew)}
                 {job.stage === 'sent back' && <> · {t('desk.stage.sent back')}</>}
               </span>
               <span class="queue-words" hidden={tab === 'issued'}>

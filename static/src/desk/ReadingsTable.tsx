@@ -37,7 +37,9 @@ export function ReadingsTable({ mount, record }: Props) {
             <th scope="col" class="number">
               {t('desk.readings.u')}
             </th>
-            <th scope="col">{t('desk.readings.typed')}</th>
+            <th scope="col" class="as-typed">
+              {t('desk.readings.typed')}
+            </th>
             <th scope="col">{t('desk.readings.with')}</th>
             <th scope="col">{t('desk.readings.by')}</th>
             <th scope="col">{t('desk.readings.at')}</th>
@@ -97,7 +99,7 @@ function ReadingRow({ line }: { line: ReadingLine }) {
       <td class="number" data-label={t('desk.readings.u')}>
         {reading.u == null ? t('desk.readings.no-u') : struck(`±\u00a0${asGiven(reading.u, reading.unit)}`)}
       </td>
-      <td data-label={t('desk.readings.typed')}>
+      <td class="as-typed" data-label={t('desk.readings.typed')}>
         <span class="typed">{struck(line.typed)}</span>
       </td>
       <td data-label={t('desk.readings.with')}>{[reading.method, reading.instrument].filter(Boolean).join(', ')}</td>

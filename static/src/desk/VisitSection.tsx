@@ -4,7 +4,7 @@
 import type { JobPage, State, Verdict, Word } from '../types';
 import { t } from './words';
 import { usualCautions } from './cautions';
-import { asGiven, percent, placeTime } from './format';
+import { asGiven, deskTime, percent, placeTime } from './format';
 import type { JobRecord, Line } from './record';
 import { WordMark } from '../parts/WordMark';
 
@@ -34,7 +34,7 @@ export function VisitSection({ page, record }: Props) {
             {record.sentBack.map((s) => (
               <li key={s.id}>
                 <span class="remark">{s.body.remark}</span>{' '}
-                <span class="by">{t('desk.by', { name: s.by, when: placeTime(s.at) })}</span>
+                <span class="by">{t('desk.by', { name: s.by, when: deskTime(s.at) })}</span>
               </li>
             ))}
           </ul>

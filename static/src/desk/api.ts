@@ -48,6 +48,12 @@ export interface Invitation {
   until?: string | null;
 }
 
+/** The server words its details as half a sentence; on the page they stand alone. */
+function sentence(text: string): string {
+  const begun = text.charAt(0).toLocaleUpperCase() + text.slice(1);
+  return /[.!?…]$/.test(begun) ? begun : `${begun}.`;
+}
+
 let signedOut: () => void = () => {};
 
 /** Who is told when the server no longer knows this session. Sign-in itself answers its own 401. */
@@ -95,7 +101,7 @@ async function call<T>(method: 'GET' | 'POST' | 'DELETE', path: string, body?: u
     answer.status,
     p.code ?? '',
     p.field ?? '',
-    p.detail || p.title || `status ${answer.status}`,
+    sentence(p.detail || p.title || `status ${answer.status}`),
     p.request_id ?? '',
   );
 }

@@ -3,6 +3,8 @@
 import type { JobSummary } from '../types';
 import type { LogState } from './api';
 import { deskTime } from './format';
+import { crewName, whatOf } from './names';
+import { t } from './words';
 
 let sheet: CSSStyleSheet | null = null;
 
@@ -18,13 +20,14 @@ export function setPaperHead(job: JobSummary, log: LogState | null): void {
     sheet = new CSSStyleSheet();
     document.adoptedStyleSheets = [...document.adoptedStyleSheets, sheet];
   }
-  const head = `${job.site} · ${job.title} · crew ${job.crew}`;
-  const foot = log === null ? `job ${job.id}` : `log head ${log.head.seq} · ${log.head.hash}`;
-  const printed = `printed ${deskTime(new Date().toISOString())}`;
+  const head = `${job.site} · ${whatOf(job)} · ${crewName(job.crew)}`;
+  const foot = log === null ? t('desk.paper.job', { id: job.id })
+      : t('desk.paper.log', { seq: log.head.seq, hash: log.head.hash });
+  const printed = t('desk.paper.printed', { when: deskTime(new Date().toISOString()) });
   sheet.replaceSync(`@page {
     @top-left { content: ${quoted(head)}; }
     @top-right { content: ${quoted(printed)}; }
     @bottom-left { content: ${quoted(foot)}; }
-    @bottom-right { content: counter(page) " of " counter(pages); }
+    @bottom-right { content: counter(page) ${quoted(t('desk.paper.of'))} counter(pages); }
   }`);
 }

@@ -90,7 +90,8 @@ export function usualLimits(combining: boolean): Limit[] {
 
 export function sheetFrom(template: Template): Sheet {
   const path = { bearing_deg: 0, elevation_deg: 0, distance_m: 1000 };
-  const combining = template === 'two omnis apart';
+  // Two like antennas at a distance hear each other's ports alike: only a radio that combines its chains can part them.
+  const combining = template !== 'crossed pair';
   const spacing = template === 'two omnis apart' ? 1000 : 500;
   const farBearing = (path.bearing_deg + 180) % 360;
   return {

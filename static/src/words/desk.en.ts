@@ -18,6 +18,10 @@ export const deskEn = {
   'desk.theme.night': 'night, red on black',
   'desk.yesterday': 'yesterday',
   'desk.print': 'Print',
+  'desk.paper.job': 'job {id}',
+  'desk.paper.log': 'log head {seq} · {hash}',
+  'desk.paper.printed': 'printed {when}',
+  'desk.paper.of': ' of ',
 
   // ---- Sign in ----
   'desk.entry.why': 'Sign in to the desk.',
@@ -100,6 +104,7 @@ export const deskEn = {
   'desk.drawing.none': 'No readings',
   'desk.drawing.moved': 'later moved: {parts}',
   'desk.limits.caption': 'Limits. Doubt, line and “met with” tell of the mount {state}.',
+  'desk.limits.caption-planned': 'Limits, and what the plan gives',
   'desk.limits.limit': 'limit',
   'desk.limits.doubt': 'doubt',
   'desk.limits.line': 'value, doubt and limit',
@@ -311,7 +316,7 @@ export const deskEn = {
   'desk.plan.incomplete': 'Something is missing or wrong. It is said beside its field.',
   'desk.plan.unreachable': 'The server did not answer, so it is not known whether the job was issued. Press again: it is issued once only.',
   'desk.issued': '{site} is issued',
-  'desk.issued.what': 'The phones of crew {crew} take it along the next time they have coverage.',
+  'desk.issued.what': 'The phones of {crew} take it along the next time they have coverage.',
   'desk.issued.open': 'Open it',
   'desk.issued.another': 'Plan another',
 
@@ -385,7 +390,7 @@ export const deskEn = {
   'desk.invite.supervisor': 'plans, signs off and sends back, sees everything',
   'desk.invite.crew-missing': 'Name the crew: a climber sees the jobs of one crew.',
   'desk.invite.make': 'Make a link',
-  'desk.invite.made': 'Link for one {role} {crew}.',
+  'desk.invite.made': 'Link for one {role}{crew}.',
   'desk.invite.hand-over': 'It works once. Hand it to that person only; whoever opens it first becomes that person here.',
   'desk.invite.until': 'Good until {when}.',
   'desk.invite.link': 'One-time link',

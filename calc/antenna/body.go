@@ -188,3 +188,9 @@ func (b *Body) Field(port int, d *Direction) (v, h complex128) {
 	c, sn := complex(w.Gain*w.Cos, 0), complex(w.Gain*w.Sin, 0)
 	return ev*c - eh*sn, ev*sn + eh*c
 }
+
+// Axes are the body's own right, up and forward as unit vectors (right, up, forward) of the mount frame.
+func (b *Body) Axes() (right, up, forward [3]float64) {
+	a := b.axes()
+	return a.right, a.up, a.forward
+}

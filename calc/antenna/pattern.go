@@ -223,3 +223,46 @@ func look(c []float64, x float64) float64 {
 func (p *Pattern) Symmetric() bool {
 	return p.Kind == Isotropic || p.Kind == Omni || p.Kind == Dipole
 }
+
+// Widths are the full half-power widths of the main lobe in azimuth and elevation in radians, 0 where the pattern does
+// not vary. Those of sampled cuts are measured on the cuts; the dipole's is 78° (Balanis, section 4.6).
+func (p *Pattern) Widths() (az, el float64) {
+	if p == nil {
+		return 0, 0
+	}
+	switch p.Kind {
+	case Panel:
+		return p.BeamwidthAz, p.BeamwidthEl
+	case Omni:
+		return 0, p.BeamwidthEl
+	case Dipole:
+		return 0, 78 * math.Pi / 180
+	case Dish:
+		return p.BeamwidthAz, p.BeamwidthAz
+	case Cuts:
+		return halfPower(p.azCut), halfPower(p.elCut)
+	}
+	return 0, 0
+}
+
+// halfPower is the width of a cut between its first crossings of 3 dB on both sides of its middle, 0 if there are none.
+func halfPower(c []float64) float64 {
+	const half = 3.0102999566398120 // 10 log₁₀ 2
+	mid := len(c) / 2
+	for i := range c { // the peak need not stand in the middle of the cut
+		if c[i] < c[mid] {
+			mid = i
+		}
+	}
+	lo, hi := mid, mid
+	for lo > 0 && c[lo] < half {
+		lo--
+	}
+	for hi < len(c)-1 && c[hi] < half {
+		hi++
+	}
+	if c[lo] < half && c[hi] < half {
+		return 0
+	}
+	return float64(hi-lo) * cutStep
+}

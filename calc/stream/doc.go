@@ -23,8 +23,7 @@
 //	r := e.Evaluate(near, far)                      full accuracy: standard error at most 0.01 bit/s/Hz
 //	l := e.Around(near, far)                        once per state; keeps Evaluate's answer as its anchor
 //	r = l.Evaluate(near, far)                       for each draw: fast, common random numbers against the anchor
-//	g := l.Gradient(near, far)                      for surrogates and remedies
-//
-// A body may move, turn and change anything but the number of its ports between calls; the number of bodies stays. An
+////
+// Of the bodies given later only position, azimuth, tilt and skew are read; patterns and ports are those given to New. An
 // Engine and what is made from it keep scratch space and serve one goroutine.
 package stream

@@ -1,0 +1,120 @@
+package stream
+
+import "math"
+
+// svd is the singular value decomposition A = U Σ Vᴴ of a rows × cols matrix stored by columns (entry (i,j) at
+// j·rows+i): one-sided Jacobi rotations on the columns (Hestenes; Demmel and Veselić, SIAM J. Matrix Anal. 13 (1992)),
+// which finds small singular values to their own relative accuracy. Columns that are already orthogonal are left alone,
+// so that block structure is kept.
+//
+// s holds cols values in falling order. u is rows × rows and v cols × cols, by columns, both unitary; columns of u beyond
+// the rank complete it.
+func svd(a []complex128, rows, cols int) (u []complex128, s []float64, v []complex128) {
+	w := append([]complex128(nil), a...)
+	v = make([]complex128, cols*cols)
+	for j := range cols {
+		v[j*cols+j] = 1
+	}
+	for range 60 {
+		rotated := false
+		for p := range cols {
+			for q := p + 1; q < cols; q++ {
+				x, y := w[p*rows:(p+1)*rows], w[q*rows:(q+1)*rows]
+				var xx, yy float64
+				var xy complex128
+				for i := range x {
+					xx += abs2(x[i])
+					yy += abs2(y[i])
+					xy += conj(x[i]) * y[i]
+				}
+				g := math.Sqrt(abs2(xy))
+				if g <= 1e-15*math.Sqrt(xx*yy) || g == 0 {
+					continue
+				}
+				rotated = true
+				zeta := (yy - xx) / (2 * g)
+				t := 1 / (math.Abs(zeta) + math.Sqrt(1+zeta*zeta))
+				if zeta < 0 {
+					t = -t
+				}
+				c := 1 / math.Sqrt(1+t*t)
+				sn := c * t
+				phase := xy / complex(g, 0)
+				rotate := func(x, y []complex128) {
+					for i := range x {
+						b := conj(phase) * y[i]
+						x[i], y[i] = complex(c, 0)*x[i]-complex(sn, 0)*b, complex(sn, 0)*x[i]+complex(c, 0)*b
+					}
+				}
+				rotate(x, y)
+				rotate(v[p*cols:(p+1)*cols], v[q*cols:(q+1)*cols])
+			}
+		}
+		if !rotated {
+			break
+		}
+	}
+	s = make([]float64, cols)
+	for j := range cols {
+		for _, x := range w[j*rows : (j+1)*rows] {
+			s[j] += abs2(x)
+		}
+		s[j] = math.Sqrt(s[j])
+	}
+	for j := 1; j < cols; j++ { // insertion sort, falling, stable
+		for k := j; k > 0 && s[k] > s[k-1]*(1+1e-12); k-- {
+			s[k], s[k-1] = s[k-1], s[k]
+			swap(w, k, rows)
+			swap(v, k, cols)
+		}
+	}
+	u = make([]complex128, rows*rows)
+	n := 0
+	for ; n < min(rows, cols) && s[n] > 1e-14*s[0] && s[n] > 0; n++ {
+		for i := range rows {
+			u[n*rows+i] = w[n*rows+i] / complex(s[n], 0)
+		}
+	}
+	for ; n < rows; n++ {
+		// The unit vector that the columns so far reach least, made orthogonal to them twice over.
+		best, least := 0, math.Inf(1)
+		for i := range rows {
+			reach := 0.0
+			for k := range n {
+				reach += abs2(u[k*rows+i])
+			}
+			if reach < least-1e-12 {
+				best, least = i, reach
+			}
+		}
+		col := u[n*rows : (n+1)*rows]
+		col[best] = 1
+		for range 2 {
+			for k := range n {
+				b := u[k*rows : (k+1)*rows]
+				var t complex128
+				for i := range b {
+					t += conj(b[i]) * col[i]
+				}
+				for i := range b {
+					col[i] -= t * b[i]
+				}
+			}
+			length := 0.0
+			for _, x := range col {
+				length += abs2(x)
+			}
+			for i := range col {
+				col[i] /= complex(math.Sqrt(length), 0)
+			}
+		}
+	}
+	return u, s, v
+}
+
+// swap exchanges column k of a matrix with the one before.
+func swap(a []complex128, k, rows int) {
+	for i := range rows {
+		a[k*rows+i], a[(k-1)*rows+i] = a[(k-1)*rows+i], a[k*rows+i]
+	}
+}

@@ -1,6 +1,6 @@
 // Figures and times as the desk writes them. Only the look of a number: no formula of the job stands here.
 
-import { decimalsFor, figure, shortest } from '../words/figures';
+import { decimalsFor, figure, shortest } from '../words/figures.ts';
 
 /** Decimals where no doubt is known. */
 function usualDecimals(unit: string): number {

@@ -48,7 +48,7 @@ func (j *judge) deciding(b *belief, o *outcome) *Deciding {
 			if b.looks[j.at(i, q)] == 0 && !(q == right && b.looks[j.at(i, up)]+b.looks[j.at(i, forward)] > 0) {
 				continue
 			}
-			exact := j.run(j.with(b, i, q, 0))
+			exact := j.runEvery(j.with(b, i, q, 0), 4)
 			if f := firmness(exact.joint); f > most {
 				most, best = f, candidate{i, q}
 			}

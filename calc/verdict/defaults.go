@@ -44,3 +44,30 @@ func biasShare(method string) float64 {
 	}
 	return 0.5
 }
+
+// plannedDoubt is the standard uncertainty that a method is good for when the
+// reading is yet to be made, in degrees or millimetres (common practice): a level
+// on a flat, a phone on it, a compass beside steel, the shadow of a plumb line, a
+// landmark from a map, a tape. A plan that names no method means level, sun and tape.
+func plannedDoubt(method string, q quantity) float64 {
+	if !q.angular() {
+		return 3.0 / 1000
+	}
+	deg := 0.3
+	switch method {
+	case "phone":
+		deg = 0.5
+	case "compass":
+		deg = 3
+	case "sun":
+		deg = 1
+	case "landmark":
+		deg = 0.5
+	case "level":
+	default:
+		if q == azimuth {
+			deg = 1
+		}
+	}
+	return deg * degree
+}

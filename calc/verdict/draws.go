@@ -66,17 +66,29 @@ func (s *spread) draw(z, x []float64) {
 
 // outcome is what the draws of one state show.
 type outcome struct {
-	values  [][]float64 // [limit][draw]; nil where a limit has no value
-	met     []float64   // share of draws that hold each limit
-	joint   float64     // share that holds all
-	average []float64   // mean margin over its own spread, a score for ranking
+	values  [][]float64     // [limit][draw], sorted; nil where a limit has no value
+	summary []doubt.Summary // of the values
+	met     []float64       // share of draws that hold each limit
+	joint   float64         // share that holds all
 }
 
 // run judges one belief: every limit in every draw.
 func (j *judge) run(b *belief) *outcome {
+	out := j.runEvery(b, 1)
+	out.summary = make([]doubt.Summary, len(out.values))
+	for k := range out.values {
+		if out.values[k] != nil {
+			out.summary[k] = doubt.Summarise(out.values[k])
+		}
+	}
+	return out
+}
+
+// runEvery judges with every stride-th draw: a lattice again, only thinner.
+func (j *judge) runEvery(b *belief, stride int) *outcome {
 	s := spreadOf(b)
 	draws := j.drawsOf(s.dims)
-	n := draws.N
+	n := draws.N / stride
 	out := &outcome{values: make([][]float64, len(j.limits)), met: make([]float64, len(j.limits))}
 	for k := range j.limits {
 		if j.limits[k].value != nil {
@@ -85,7 +97,7 @@ func (j *judge) run(b *belief) *outcome {
 	}
 	x := make([]float64, len(s.base))
 	for i := range n {
-		s.draw(draws.At(i), x)
+		s.draw(draws.At(i*stride), x)
 		all := true
 		for k := range j.limits {
 			l := &j.limits[k]

@@ -77,17 +77,9 @@ type judge struct {
 // has any reading of the near end. A problem says that the sheet asks for nothing
 // that applies, or that its readings can not be true together.
 func Judge(s *sheet.Sheet) (*Verdict, *codec.Problem) {
-	if len(s.Limits) == 0 {
-		return nil, &codec.Problem{Code: codec.MissingField, Field: "limits", Message: "a verdict needs at least one limit to judge by"}
-	}
-	j := &judge{model: newModel(s)}
-	j.limits = j.model.limits()
-	applies := false
-	for k := range j.limits {
-		applies = applies || j.limits[k].whyNot == ""
-	}
-	if !applies {
-		return nil, &codec.Problem{Code: codec.Impossible, Field: "limits", Message: "none of the limits applies to this mount (" + j.limits[0].whyNot + "); set one that does"}
+	j, p := newJudge(s)
+	if p != nil {
+		return nil, p
 	}
 	var beliefs [3]*belief
 	for st := sheet.Planned; st <= sheet.AsLeft; st++ {
@@ -138,6 +130,23 @@ func Judge(s *sheet.Sheet) (*Verdict, *codec.Problem) {
 	return v, nil
 }
 
+// newJudge makes the sheet and its limits ready.
+func newJudge(s *sheet.Sheet) (*judge, *codec.Problem) {
+	if len(s.Limits) == 0 {
+		return nil, &codec.Problem{Code: codec.MissingField, Field: "limits", Message: "a verdict needs at least one limit to judge by"}
+	}
+	j := &judge{model: newModel(s)}
+	j.limits = j.model.limits()
+	applies := false
+	for k := range j.limits {
+		applies = applies || j.limits[k].whyNot == ""
+	}
+	if !applies {
+		return nil, &codec.Problem{Code: codec.Impossible, Field: "limits", Message: "none of the limits applies to this mount (" + j.limits[0].whyNot + "); set one that does"}
+	}
+	return j, nil
+}
+
 // word is the word for a probability; never go while a reading or a limit is
 // missing from it.
 func (j *judge) word(p float64, missing, notJudged bool) string {
@@ -165,7 +174,7 @@ func finite(x float64) *float64 {
 	return &x
 }
 
-// report sums up the draws of every limit. It sorts the draws.
+// report sets every limit beside what the draws show.
 func (j *judge) report(o *outcome) []LimitOutcome {
 	out := make([]LimitOutcome, len(j.limits))
 	for k := range j.limits {
@@ -175,7 +184,7 @@ func (j *judge) report(o *outcome) []LimitOutcome {
 			r.Sense = "at least"
 		}
 		if o.values[k] != nil {
-			s := doubt.Summarise(append([]float64(nil), o.values[k]...))
+			s := &o.summary[k]
 			r.Value, r.U, r.Low, r.High = finite(s.Median), finite(s.U), finite(s.Low), finite(s.High)
 			r.Margin, r.Chance = finite(l.margin(s.Median)), finite(o.met[k])
 		} else if l.whyNot == "" {

@@ -129,8 +129,7 @@ func (m *model) crossTalk() judgeOf {
 				e[end][k] = m.polarization(p, x).Unit()
 				gain[end][k] = 1
 				if several[end] {
-					g := beams[p.body].amplitude(x)
-					gain[end][k] = g * g
+					gain[end][k] = math.Pow(10, -beams[p.body].loss(x)/10)
 				}
 			}
 		}
@@ -209,10 +208,10 @@ func (m *model) pairAngleError(pairs [][2]int) judgeOf {
 
 // beam is a body's pattern ready to be looked at from the other end.
 type beam struct {
-	body   int
-	m      *model
-	toward antenna.Direction
-	shape  antenna.Body
+	m        *model
+	body     int
+	sin, cos float64 // of the elevation of the other end, straight ahead
+	pattern  *antenna.Pattern
 }
 
 // beams prepares the pattern of every body.
@@ -223,16 +222,23 @@ func (m *model) beams() []beam {
 		if m.bodies[i].far {
 			rise = m.rise[1]
 		}
-		out[i] = beam{body: i, m: m, toward: antenna.Toward(0, rise), shape: antenna.Body{Pattern: m.bodies[i].pattern(m.sheet.Radio.WavelengthM())}}
+		out[i] = beam{m: m, body: i, pattern: m.bodies[i].pattern(m.sheet.Radio.WavelengthM())}
+		out[i].sin, out[i].cos = math.Sincos(rise)
 	}
 	return out
 }
 
-// amplitude of the pattern toward the other end, 1 on the top of the main lobe.
-func (b *beam) amplitude(x []float64) float64 {
-	b.shape.Skew, b.shape.Tilt, b.shape.Azimuth = x[b.m.at(b.body, skew)], x[b.m.at(b.body, tilt)], x[b.m.at(b.body, azimuth)]
-	s := b.shape.Ready()
-	return s.View(&b.toward).Gain
+// loss in dB of the pattern toward the other end against the top of the main lobe:
+// the direction of the other end, turned back by azimuth, tilt and skew into the
+// body's own frame (see package antenna), there as azimuth and elevation.
+func (b *beam) loss(x []float64) float64 {
+	sk, ck := math.Sincos(x[b.m.at(b.body, skew)])
+	st, ct := math.Sincos(x[b.m.at(b.body, tilt)])
+	sa, ca := math.Sincos(x[b.m.at(b.body, azimuth)])
+	r, f := -b.cos*sa, b.cos*ca
+	u, f := b.sin*ct-f*st, f*ct+b.sin*st
+	r, u = r*ck-u*sk, u*ck+r*sk
+	return b.pattern.Attenuation(math.Atan2(r, f), math.Asin(math.Min(math.Max(u, -1), 1)))
 }
 
 // pointingLoss is the largest loss in dB, over the near antennas, of the pattern
@@ -240,11 +246,11 @@ func (b *beam) amplitude(x []float64) float64 {
 func (m *model) pointingLoss() judgeOf {
 	beams := m.beams()[:m.near]
 	return func(x []float64) float64 {
-		least := 1.0
+		worst := 0.0
 		for i := range beams {
-			least = math.Min(least, beams[i].amplitude(x))
+			worst = math.Max(worst, beams[i].loss(x))
 		}
-		return math.Max(0, -20*math.Log10(least))
+		return worst
 	}
 }
 

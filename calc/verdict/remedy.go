@@ -88,7 +88,7 @@ func (j *judge) remedies(b *belief, o *outcome) []Remedy {
 	}
 	missing := len(j.model.missing(b)) > 0
 	notJudged := j.notJudged()
-	before := doubt.Summarise(append([]float64(nil), o.values[critical]...))
+	before := &o.summary[critical]
 	var out []Remedy
 	for _, m := range moves {
 		moved := *b
@@ -98,7 +98,7 @@ func (j *judge) remedies(b *belief, o *outcome) []Remedy {
 		if after.joint < o.joint {
 			continue
 		}
-		s := doubt.Summarise(append([]float64(nil), after.values[critical]...))
+		s := &after.summary[critical]
 		r := Remedy{
 			Antenna: j.bodies[m.body].antenna.ID, Quantity: m.q.String(), Axis: m.q.axis(), Unit: m.q.unit(),
 			Change: m.q.border(m.by), Direction: m.q.direction(m.by), Limit: j.limits[critical].Name,
@@ -126,7 +126,7 @@ func (j *judge) scales(o *outcome) []float64 {
 	scale := make([]float64, len(j.limits))
 	for k := range j.limits {
 		if o.values[k] != nil {
-			s := doubt.Summarise(append([]float64(nil), o.values[k]...))
+			s := &o.summary[k]
 			scale[k] = math.Max((s.High-s.Low)/4, math.Abs(j.limits[k].Limit.Value)/100)
 			if math.IsNaN(scale[k]) || math.IsInf(scale[k], 0) {
 				scale[k] = math.Abs(j.limits[k].Limit.Value) / 10

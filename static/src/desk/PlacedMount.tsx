@@ -20,18 +20,22 @@ export function PlacedMount({ sheet, verdict, state, marked = [], most = 200 }: 
     read: state === 'planned' ? { skew: true, tilt: true, azimuth: true, position: true } : a.read,
     off: [...new Set([...a.off, ...marked.filter((m) => m.antenna === a.id).map((m) => m.quantity)])],
   }));
+  const remedy = drawnRemedy(verdict, state);
   return (
     <MountDrawing
       antennas={antennas}
       spacings={spacingsIn(verdict, state)}
-      remedy={drawnRemedy(verdict, state)}
+      remedy={remedy}
       ghost={state !== 'planned'}
       compact
       captionless
-      most={most}
+      most={remedy === null ? most : most + arrowRoom}
     />
   );
 }
+
+/** What the drawing keeps free above the mount for an arrow, so that all three states stand in one scale. */
+const arrowRoom = 26;
 
 /** calc states the spacings of the state it judged; of the others the drawing measures its own places. */
 function spacingsIn(verdict: Verdict, state: State): DrawnSpacing[] {

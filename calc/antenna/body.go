@@ -130,8 +130,6 @@ type Sight struct {
 // Ready returns the body's axes and pattern, for View.
 func (b *Body) Ready() Sight { return Sight{b.axes(), b.Pattern} }
 
-const decibel = math.Ln10 / 20 // one decibel of amplitude, in nepers
-
 // View evaluates the body's pattern and the turn of its field directions in direction d of the mount frame.
 //
 // Straight along the body's own vertical axis, where azimuth has no meaning, the turn is that of azimuth 0.
@@ -171,12 +169,36 @@ func (p *Pattern) amplitude(x, y, z float64) float64 {
 			return dipoleFloor
 		}
 		return math.Max(math.Cos(math.Pi/2*y)/math.Sqrt(c2), dipoleFloor)
+	case Panel:
+		a := arctangent2(x, z) / p.BeamwidthAz
+		e := (arcsine(within1(y)) - p.ElectricalTilt) / p.BeamwidthEl
+		a, e = 12*a*a, 12*e*e
+		if a > p.FrontToBack {
+			a = p.FrontToBack
+		}
+		if e > p.Sidelobe {
+			e = p.Sidelobe
+		}
+		if a += e; a > p.FrontToBack {
+			a = p.FrontToBack
+		}
+		return ofAttenuation(a)
 	case Dish:
-		return math.Exp(-decibel * p.dish(math.Atan2(math.Sqrt(x*x+y*y), z)))
+		return ofAttenuation(p.dish(arctangent2(math.Sqrt(x*x+y*y), z)))
 	case Omni:
-		return math.Exp(-decibel * p.Attenuation(0, math.Asin(math.Min(math.Max(y, -1), 1))))
+		return ofAttenuation(p.Attenuation(0, arcsine(within1(y))))
 	}
-	return math.Exp(-decibel * p.Attenuation(math.Atan2(x, z), math.Asin(math.Min(math.Max(y, -1), 1))))
+	return ofAttenuation(p.Attenuation(arctangent2(x, z), arcsine(within1(y))))
+}
+
+func within1(y float64) float64 {
+	if y > 1 {
+		return 1
+	}
+	if y < -1 {
+		return -1
+	}
+	return y
 }
 
 // Field is the (V, H) field of one port in direction d, relative to the top of the body's main lobe, phase of the

@@ -134,24 +134,16 @@ func (c *channel) at(w []complex128) {
 	copy(h, c.mean)
 	if len(c.paths) > 0 {
 		for k, p := range c.paths {
+			wr, wi := real(w[k]), imag(w[k])
 			for i, v := range p {
-				h[i] += v * w[k]
+				h[i] += complex(real(v)*wr-imag(v)*wi, real(v)*wi+imag(v)*wr)
 			}
 		}
 		return
 	}
 	at := 0
 	for i := range h {
-		row := c.lower[at : at+i+1]
-		ww := w[:len(row)]
-		var re, im float64
-		for k, l := range row {
-			lr, li := real(l), imag(l)
-			wr, wi := real(ww[k]), imag(ww[k])
-			re += lr*wr - li*wi
-			im += lr*wi + li*wr
-		}
-		h[i] += complex(re, im)
+		h[i] += product(c.lower[at:at+i+1], w)
 		at += i + 1
 	}
 }

@@ -56,10 +56,10 @@ type Result struct {
 // Targets of the standard error of BitsPerSHz. The limit is 0.01; the estimate from 16 replicates is itself 18 % uncertain
 // and sampling stops when it first falls below the target, so that the target stands well below.
 const (
-	standardErrorTarget = 0.006
+	standardErrorTarget = 0.0075
+	kroneckerTarget     = 0.004
 	firstPoints         = 64   // per replicate
 	mostPoints          = 4096 // per replicate: 32,768 in all
-	localPoints         = 8    // per replicate, for Local
 )
 
 // Tolerances of each covariance against the power received. A covariance error of 1e-5 moves the rate of the weakest
@@ -75,6 +75,7 @@ type Engine struct {
 	setup     Setup
 	near, far *mount
 	rho       float64 // ρ' of the determinant
+	target    float64 // of the standard error
 	same      float64 // κ same
 	cross     float64 // κ cross
 	los       float64 // √(K/(1+K)), 0 without sight
@@ -146,7 +147,7 @@ func prepare(setup Setup, near, far []antenna.Body) (*Engine, error) {
 	if e.near.extent()+e.far.extent() >= setup.Distance {
 		return nil, errFar
 	}
-	e.rho = setup.SNR
+	e.rho, e.target = setup.SNR, standardErrorTarget
 	if setup.Power == Shared {
 		e.rho /= float64(nn)
 	}
@@ -325,18 +326,36 @@ type samples struct {
 
 // extend evaluates the loaded channel on points s.n to n of each replicate.
 func (e *Engine) extend(s *samples, n int) {
-	e.points.upTo(n)
+	e.points.upTo(n, nil)
 	size := e.points.rows * e.points.cols
 	for r := range replicates {
-		w := e.points.draws[r]
-		for i := s.n; i < n; i++ {
-			e.channel.at(w[i*size : (i+1)*size])
-			b, d := e.channel.rate(e.rho)
-			s.bits[r] = append(s.bits[r], b)
-			s.streams[r] = append(s.streams[r], d)
+		for _, b := range e.points.draws[r] {
+			for i := max(s.n, b.from); i < min(n, b.to); i++ {
+				e.channel.at(b.w[(i-b.from)*size:][:size])
+				e.sample(s, r)
+			}
 		}
 	}
 	s.n = n
+}
+
+// grow is extend for the reference of triangular draws itself: new points come with their H.
+func (e *Engine) grow(s *samples, n int) {
+	if e.points.reference == nil || s.n != e.points.have {
+		e.extend(s, n)
+		return
+	}
+	e.points.upTo(n, func(r int, h []complex128) {
+		copy(e.channel.h, h)
+		e.sample(s, r)
+	})
+	s.n = n
+}
+
+func (e *Engine) sample(s *samples, r int) {
+	b, d := e.channel.rate(e.rho)
+	s.bits[r] = append(s.bits[r], b)
+	s.streams[r] = append(s.streams[r], d)
 }
 
 func mean(x []float64) float64 {
@@ -393,24 +412,24 @@ func (e *Engine) settle() {
 		e.finish(&e.anchor)
 		return
 	}
+	// Near line of sight plain draws do best, in rich scatter triangular ones: a trial tells.
 	e.points = e.newLayout(false)
 	var s samples
 	e.extend(&s, firstPoints)
 	m, se := overReplicates(&s.bits)
-	// Rich scatter may do better with triangular draws: try them where the plain ones are slow.
-	if se > standardErrorTarget && len(e.channel.paths) == 0 && min(e.channel.far, e.channel.near) > 1 {
+	if se > e.target && len(e.channel.paths) == 0 && min(e.channel.far, e.channel.near) > 1 {
 		plain := e.points
 		e.points = e.newLayout(true)
 		var t samples
-		e.extend(&t, firstPoints)
+		e.grow(&t, firstPoints)
 		if tm, tse := overReplicates(&t.bits); tse < 0.8*se {
 			s, m, se = t, tm, tse
 		} else {
 			e.points = plain
 		}
 	}
-	for se > standardErrorTarget && s.n < mostPoints {
-		e.extend(&s, 2*s.n)
+	for se > e.target && s.n < mostPoints {
+		e.grow(&s, more(s.n, se/e.target))
 		m, se = overReplicates(&s.bits)
 	}
 	e.base, e.baseBits = s, m
@@ -418,6 +437,13 @@ func (e *Engine) settle() {
 	e.baseDoF, e.anchor.StreamsError = overReplicates(&s.streams)
 	e.anchor.EffectiveStreams = e.baseDoF
 	e.finish(&e.anchor)
+}
+
+// more is how many points per replicate to go on with when the error is too large by a factor: as many as plain sampling
+// would need, twice as many at most, in whole runs of 64 that keep the sequence even.
+func more(n int, factor float64) int {
+	want := float64(n) * math.Min(math.Max(factor*factor, 1.125), 2)
+	return min((int(want)+63)/64*64, mostPoints)
 }
 
 // hold puts the mean into h: the channel where nothing is random.
@@ -452,10 +478,10 @@ func (e *Engine) Evaluate(near, far []antenna.Body) Result {
 		e.extend(&s, n)
 		r.BitsPerSHz, r.StandardError = e.against(&s.bits, &e.base.bits, e.baseBits, e.anchor.StandardError)
 		r.EffectiveStreams, r.StreamsError = e.against(&s.streams, &e.base.streams, e.baseDoF, e.anchor.StreamsError)
-		if r.StandardError <= standardErrorTarget*4/3 || n >= mostPoints {
+		if r.StandardError <= e.target || n >= mostPoints {
 			break
 		}
-		n *= 2
+		n = more(n, r.StandardError/e.target)
 	}
 	e.finish(&r)
 	return r
@@ -501,7 +527,7 @@ func (e *Engine) against(x, base *[replicates][]float64, m, se float64) (float64
 func (e *Engine) describe(near, far []antenna.Body) Result {
 	c := e.channel
 	nf, nn := c.far, c.near
-	r := Result{NearEnvelope: -1, FarEnvelope: -1}
+	r := Result{}
 	flat := make([]float64, nf*nn)
 	for f := range nf {
 		r.MeanPower = append(r.MeanPower, flat[f*nn:(f+1)*nn])
@@ -515,15 +541,23 @@ func (e *Engine) describe(near, far []antenna.Body) Result {
 	r.SingleChain, r.BestPair = e.best()
 	r.NearPointing = pointing(e.near, near, e.setup.Elevation)
 	r.FarPointing = pointing(e.far, far, -e.setup.Elevation)
-	if c.random {
-		if len(e.likeNear) > 0 {
-			r.NearEnvelope = e.envelope(e.likeNear, true)
-		}
-		if len(e.likeFar) > 0 {
-			r.FarEnvelope = e.envelope(e.likeFar, false)
-		}
-	}
+	r.NearEnvelope, r.FarEnvelope = e.envelopes()
 	return r
+}
+
+// envelopes are NearEnvelope and FarEnvelope of the loaded channel.
+func (e *Engine) envelopes() (near, far float64) {
+	near, far = -1, -1
+	if !e.channel.random {
+		return near, far
+	}
+	if len(e.likeNear) > 0 {
+		near = e.envelope(e.likeNear, true)
+	}
+	if len(e.likeFar) > 0 {
+		far = e.envelope(e.likeFar, false)
+	}
+	return near, far
 }
 
 // best is the rate of the best single pair and which it is. Pairs are ranked by a guess that is off by less than what

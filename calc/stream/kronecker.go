@@ -116,7 +116,7 @@ func correlated(near, far []complex128, snr float64, power Power) (*Engine, erro
 		return nil, errSNR
 	}
 	nn, nf := int(math.Round(math.Sqrt(float64(len(near))))), int(math.Round(math.Sqrt(float64(len(far)))))
-	e := &Engine{rho: snr, setup: Setup{SNR: snr, Power: power}, channel: newChannel(nf, nn, 0), scattered: 1}
+	e := &Engine{rho: snr, target: kroneckerTarget, setup: Setup{SNR: snr, Power: power}, channel: newChannel(nf, nn, 0), scattered: 1}
 	if power == Shared {
 		e.rho /= float64(nn)
 	}

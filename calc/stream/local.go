@@ -1,32 +1,69 @@
 package stream
 
-import "crossplumb/calc/antenna"
+import (
+	"math"
+
+	"crossplumb/calc/antenna"
+)
+
+// localReplicates × localPoints random points serve Local: enough for the difference of two like channels, whose errors
+// cancel (TestLocalAgainstEvaluate holds what is left).
+const (
+	localReplicates = 2
+	localPoints     = 32
+)
 
 // Local evaluates many geometries near one: draws of doubtful readings, turns of a bolt. It compares each with the
 // anchor geometry on few common random points and a coarse quadrature, so that the errors of both cancel as far as the
 // two are alike, and adds the difference to the anchor's accurate answer.
 type Local struct {
-	e      *Engine
-	anchor Result
-	base   samples
+	e             *Engine
+	anchor        Result
+	near, far     []antenna.Body
+	bits, streams [localReplicates]float64 // of the anchor by the same means
 }
 
 // Around makes a Local about the given geometry. The anchor's accurate answer is Anchor.
 func (e *Engine) Around(near, far []antenna.Body) *Local {
-	return e.local(near, far, e.Evaluate(near, far))
+	l := &Local{e: e, anchor: e.Evaluate(near, far)}
+	l.near, l.far = append(l.near, near...), append(l.far, far...)
+	e.load(near, far, true)
+	l.bits, l.streams = e.few()
+	return l
 }
 
-func (e *Engine) local(near, far []antenna.Body, anchor Result) *Local {
-	l := &Local{e: e, anchor: anchor}
-	e.load(near, far, true)
-	if e.channel.random {
-		e.extend(&l.base, localPoints)
+// few is the mean rate and streams of the loaded channel over the first points of some replicates.
+func (e *Engine) few() (bits, streams [localReplicates]float64) {
+	if !e.channel.random {
+		e.channel.hold()
+		b, d := e.channel.rate(e.rho)
+		for r := range bits {
+			bits[r], streams[r] = b, d
+		}
+		return bits, streams
 	}
-	return l
+	e.points.upTo(localPoints, nil)
+	size := e.points.rows * e.points.cols
+	for r := range bits {
+		w := e.points.draws[r][0].w
+		for i := range localPoints {
+			e.channel.at(w[i*size:][:size])
+			b, d := e.channel.rate(e.rho)
+			bits[r] += b / localPoints
+			streams[r] += d / localPoints
+		}
+	}
+	return bits, streams
 }
 
 // Anchor is the accurate result for the geometry the Local was made about.
 func (l *Local) Anchor() Result { return l.anchor }
+
+// Values are the figures of a geometry near the anchor that depend on the whole channel.
+type Values struct {
+	BitsPerSHz, EffectiveStreams float64
+	NearEnvelope, FarEnvelope    float64 // −1 where there is none
+}
 
 // Evaluate computes a geometry near the anchor. StandardError is that of the difference to the anchor; what the anchor
 // itself is uncertain by comes on top and is the same for all.
@@ -34,29 +71,35 @@ func (l *Local) Evaluate(near, far []antenna.Body) Result {
 	e := l.e
 	e.load(near, far, true)
 	r := e.describe(near, far)
-	if !e.channel.random {
-		e.channel.hold()
-		r.BitsPerSHz, r.EffectiveStreams = e.channel.rate(e.rho)
-		e.finish(&r)
-		return r
-	}
-	var s samples
-	e.extend(&s, localPoints)
-	if l.base.n == 0 {
-		r.BitsPerSHz, r.StandardError = overReplicates(&s.bits)
-		r.EffectiveStreams, r.StreamsError = overReplicates(&s.streams)
-		e.finish(&r)
-		return r
-	}
-	var bits, streams [replicates]float64
-	for i := range replicates {
-		bits[i] = mean(s.bits[i]) - mean(l.base.bits[i])
-		streams[i] = mean(s.streams[i]) - mean(l.base.streams[i])
-	}
-	r.BitsPerSHz, r.StandardError = meanAndError(&bits)
-	r.EffectiveStreams, r.StreamsError = meanAndError(&streams)
-	r.BitsPerSHz += l.anchor.BitsPerSHz
-	r.EffectiveStreams += l.anchor.EffectiveStreams
+	r.BitsPerSHz, r.StandardError, r.EffectiveStreams, r.StreamsError = l.difference()
 	e.finish(&r)
 	return r
+}
+
+// Values is Evaluate without what costs time and can be had otherwise.
+func (l *Local) Values(near, far []antenna.Body) Values {
+	l.e.load(near, far, true)
+	var v Values
+	v.BitsPerSHz, _, v.EffectiveStreams, _ = l.difference()
+	v.NearEnvelope, v.FarEnvelope = l.e.envelopes()
+	return v
+}
+
+func (l *Local) difference() (bits, bitsError, streams, streamsError float64) {
+	b, d := l.e.few()
+	for i := range b {
+		b[i] -= l.bits[i]
+		d[i] -= l.streams[i]
+	}
+	bits, bitsError = few(&b)
+	streams, streamsError = few(&d)
+	return l.anchor.BitsPerSHz + bits, bitsError, l.anchor.EffectiveStreams + streams, streamsError
+}
+
+func few(x *[localReplicates]float64) (m, se float64) {
+	m = mean(x[:])
+	for _, v := range x {
+		se += (v - m) * (v - m)
+	}
+	return m, math.Sqrt(se / (localReplicates * (localReplicates - 1)))
 }

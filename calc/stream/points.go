@@ -2,6 +2,8 @@ package stream
 
 import (
 	"math"
+	"math/bits"
+	"slices"
 
 	"gonum.org/v1/gonum/mathext"
 )
@@ -28,9 +30,10 @@ type points struct {
 	shift      [][]uint32         // per replicate and dimension
 	state      [][]uint32         // running Sobol state per replicate, before the shift
 	have       int                // points per replicate made so far
-	draws      [replicates][]complex128
+	draws      [replicates][]block
 	quantile   *quantile
 	radius     []*radial // by number of complex dimensions left
+	work       *workspace
 	seed       uint64
 }
 
@@ -59,6 +62,7 @@ func newPoints(rows, cols int, phases bool, reference *channel) *points {
 			}
 			p.radius = append(p.radius, newRadial(m))
 		}
+		p.prepare()
 	}
 	p.seed = 1
 	plain := directions(min(p.dims, sobolDimensions))
@@ -138,58 +142,51 @@ func scrambled(plain [][digits]uint32, seed *uint64) [][digits]uint32 {
 	return out
 }
 
-// upTo makes sure that n points of each replicate exist. n is a power of two, so that every prefix used is a net.
-func (p *points) upTo(n int) {
+// block is a run of consecutive points: entry k of point i is at (i−from)·size+k.
+type block struct {
+	from, to int
+	w        []complex128
+}
+
+// upTo makes sure that n points of each replicate exist. see, where not nil, is told each new point's replicate and vec(H) of the reference.
+func (p *points) upTo(n int, see func(replicate int, h []complex128)) {
 	if n <= p.have {
 		return
 	}
 	size := p.rows * p.cols
 	u := make([]float64, p.dims)
-	w := newWorkspace(p.rows, p.cols)
+	all := make([]complex128, replicates*(n-p.have)*size)
 	for r := range replicates {
-		d := make([]complex128, n*size)
-		copy(d, p.draws[r])
+		b := block{from: p.have, to: n, w: all[:(n-p.have)*size]}
+		all = all[len(b.w):]
+		state, shift, numbers := p.state[r], p.shift[r], p.sobol[r]
 		// Dimensions beyond the table: a stream of its own for each replicate and starting point.
 		beyond := p.seed + uint64(r)*0xd1342543de82ef95 + uint64(p.have)
-		for i := p.have; i < n; i++ {
+		for i := b.from; i < n; i++ {
 			if i > 0 {
-				c := 0 // index of the lowest zero bit of i−1: Gray code order (Antonov and Saleev)
-				for x := i - 1; x&1 == 1; x >>= 1 {
-					c++
-				}
-				for j := range p.state[r] {
-					p.state[r][j] ^= p.sobol[r][j][c]
+				c := bits.TrailingZeros(uint(i)) // Gray code order (Antonov and Saleev)
+				for j := range state {
+					state[j] ^= numbers[j][c]
 				}
 			}
-			for j := range p.state[r] {
-				u[j] = (float64(p.state[r][j]^p.shift[r][j]) + 0.5) / (1 << 32)
+			for j := range state {
+				u[j] = (float64(state[j]^shift[j]) + 0.5) / (1 << 32)
 			}
-			for j := len(p.state[r]); j < p.dims; j++ {
+			for j := len(state); j < p.dims; j++ {
 				u[j] = (float64(splitmix(&beyond)>>11) + 0.5) / (1 << 53)
 			}
-			p.draw(d[i*size:(i+1)*size], u, w)
+			p.draw(b.w[(i-b.from)*size:][:size], u)
+			if see != nil {
+				see(r, p.work.h)
+			}
 		}
-		p.draws[r] = d
+		p.draws[r] = append(p.draws[r], b)
 	}
 	p.have = n
 }
 
-// workspace is the scratch of a triangular draw.
-type workspace struct {
-	h, basis [][]complex128
-}
-
-func newWorkspace(rows, cols int) *workspace {
-	w := &workspace{}
-	for range cols {
-		w.h = append(w.h, make([]complex128, rows))
-		w.basis = append(w.basis, make([]complex128, rows))
-	}
-	return w
-}
-
 // draw maps a point of the unit cube to a matrix, column after column.
-func (p *points) draw(out []complex128, u []float64, ws *workspace) {
+func (p *points) draw(out []complex128, u []float64) {
 	if p.phases {
 		for i := range out {
 			s, c := math.Sincos(2 * math.Pi * u[i])
@@ -201,78 +198,143 @@ func (p *points) draw(out []complex128, u []float64, ws *workspace) {
 	if p.reference != nil {
 		at = p.extra()
 	}
+	const half = math.Sqrt2 / 2
 	for i := range out {
-		out[i] = complex(p.quantile.at(u[at])*math.Sqrt2/2, p.quantile.at(u[at+1])*math.Sqrt2/2)
+		out[i] = complex(p.quantile.at(u[at])*half, p.quantile.at(u[at+1])*half)
 		at += 2
 	}
-	if p.reference == nil {
-		return
+	if p.reference != nil {
+		p.triangulate(out, u[:p.extra()])
 	}
-	p.triangulate(out, u[:p.extra()], ws)
+}
+
+// workspace holds what triangular draws need beside the reference: its columns grouped by their diagonal blocks L_kk,
+// which are multiples of one another where columns see the far end alike, and scratch.
+type workspace struct {
+	group []int          // of each column; −1 where L_kk is singular
+	block [][]complex128 // per group: L_kk packed by rows, its diagonal inverted
+	basis [][]complex128 // per group: orthonormal columns
+	count []int          // per group: how many
+	h     []complex128   // vec(H) of the reference
+	x     []complex128
+}
+
+func (p *points) prepare() {
+	c, rows := p.reference, p.rows
+	w := &workspace{h: make([]complex128, rows*p.cols), x: make([]complex128, rows)}
+	for k := range p.cols {
+		var l []complex128
+		regular := true
+		for i := range rows {
+			r := k*rows + i
+			row := c.lower[r*(r+1)/2+k*rows:][:i+1]
+			regular = regular && row[i] != 0
+			l = append(l, row...)
+		}
+		g := -1
+		if regular {
+			for o := range w.block {
+				if multiple(l, w.block[o]) {
+					g = o
+				}
+			}
+			if g < 0 {
+				g = len(w.block)
+				w.block = append(w.block, l)
+				w.basis = append(w.basis, make([]complex128, rows*rows))
+			}
+		}
+		w.group = append(w.group, g)
+	}
+	for _, l := range w.block {
+		at := 0
+		for i := range rows {
+			at += i
+			l[at] = 1 / l[at]
+			at++
+		}
+	}
+	w.count = make([]int, len(w.block))
+	p.work = w
+}
+
+// multiple reports whether two packed triangles differ by a factor only.
+func multiple(a, b []complex128) bool {
+	f := real(a[0]) / real(b[0])
+	for i := range a {
+		if d := a[i] - complex(f, 0)*b[i]; abs2(d) > 1e-16*abs2(a[0]) {
+			return false
+		}
+	}
+	return true
 }
 
 // triangulate replaces, column by column, the length of the part of w_k that moves column k of the reference's H off the
 // columns before it: with h_k = … + L_kk w_k, the part of w_k orthogonal to L_kk⁻¹h_j, j < k. Its length is independent
 // of its direction and of the rest, so that drawing it from a coordinate of its own keeps the law.
-func (p *points) triangulate(out []complex128, u []float64, ws *workspace) {
-	c, rows := p.reference, p.rows
-	n := len(u)
-	for k := range n {
+func (p *points) triangulate(out []complex128, u []float64) {
+	c, rows, ws := p.reference, p.rows, p.work
+	clear(ws.count)
+	for k := range p.cols {
 		col := out[k*rows : (k+1)*rows]
-		diagonal := func(i int) []complex128 { // row i of L_kk
-			r := k*rows + i
-			return c.lower[r*(r+1)/2+k*rows:][: i+1 : i+1]
-		}
-		regular := true
-		for i := range rows {
-			regular = regular && diagonal(i)[i] != 0
-		}
-		if regular {
-			off := ws.basis[k]
+		if g := ws.group[k]; g >= 0 && k < len(u) {
+			off := ws.x
 			copy(off, col)
-			free := rows
-			for j := range k {
-				// x = L_kk⁻¹ h_j, then made orthogonal to those before it.
-				x := ws.basis[j]
-				for i := range rows {
-					row := diagonal(i)
-					t := ws.h[j][i]
-					for m, l := range row[:i] {
-						t -= l * x[m]
-					}
-					x[i] = t / complex(real(row[i]), 0)
-				}
-				before := norm2(x)
-				for m := range j {
-					remove(x, ws.basis[m])
-				}
-				if after := norm2(x); after > 1e-20*before {
-					shrink(x, 1/math.Sqrt(after))
-					remove(off, x)
-					free--
-				} else {
-					clear(x)
-				}
+			basis, n := ws.basis[g], ws.count[g]
+			for m := range n {
+				remove(off, basis[m*rows:(m+1)*rows])
 			}
-			if length := norm2(off); length > 0 && free > 0 {
+			if length := norm2(off); length > 0 && n < rows {
 				// The last columns stand in the fewest dimensions and matter most: they take the first coordinates.
-				r := p.radius[free].at(p.quantile.at(u[n-1-k]))
-				grow := complex(r/math.Sqrt(length)-1, 0)
+				r := p.radius[rows-n].at(p.quantile.at(u[len(u)-1-k]))
+				grow := r/math.Sqrt(length) - 1
 				for i := range col {
-					col[i] += grow * off[i]
+					col[i] += complex(grow*real(off[i]), grow*imag(off[i]))
 				}
 			}
 		}
 		// h_k = mean + Σ_{j ≤ k} L_kj w_j: later columns are measured against it.
+		h := ws.h[k*rows : (k+1)*rows]
 		for i := range rows {
 			r := k*rows + i
-			t := c.mean[r]
-			for m, l := range c.lower[r*(r+1)/2:][: r+1 : r+1] {
-				t += l * out[m]
+			h[i] = c.mean[r] + product(c.lower[r*(r+1)/2:][:r+1], out)
+		}
+		// L⁻¹h_k joins the basis of each group that still has columns to come.
+		for g, l := range ws.block {
+			n := ws.count[g]
+			if n >= rows || !slices.Contains(ws.group[k+1:], g) {
+				continue
 			}
-			ws.h[k][i] = t
+			x := ws.basis[g][n*rows : (n+1)*rows]
+			at := 0
+			for i := range rows {
+				t := h[i] - product(l[at:at+i], x)
+				d := real(l[at+i])
+				x[i] = complex(real(t)*d, imag(t)*d)
+				at += i + 1
+			}
+			before := norm2(x)
+			for m := range n {
+				remove(x, ws.basis[g][m*rows:(m+1)*rows])
+			}
+			if after := norm2(x); after > 1e-20*before {
+				shrink(x, 1/math.Sqrt(after))
+				ws.count[g]++
+			}
 		}
 	}
+}
+
+// product is Σ a_i b_i over the length of a.
+func product(a, b []complex128) complex128 {
+	var re, im float64
+	b = b[:len(a)]
+	for i, x := range a {
+		y := b[i]
+		re += real(x)*real(y) - imag(x)*imag(y)
+		im += real(x)*imag(y) + imag(x)*real(y)
+	}
+	return complex(re, im)
 }
 
 func norm2(x []complex128) float64 {
@@ -285,18 +347,21 @@ func norm2(x []complex128) float64 {
 
 // remove takes out of x its part along the unit vector (or zero vector) b.
 func remove(x, b []complex128) {
-	var t complex128
-	for i := range b {
-		t += conj(b[i]) * x[i]
+	var tr, ti float64
+	x = x[:len(b)]
+	for i, c := range b {
+		y := x[i]
+		tr += real(c)*real(y) + imag(c)*imag(y)
+		ti += real(c)*imag(y) - imag(c)*real(y)
 	}
-	for i := range b {
-		x[i] -= t * b[i]
+	for i, c := range b {
+		x[i] -= complex(tr*real(c)-ti*imag(c), tr*imag(c)+ti*real(c))
 	}
 }
 
 func shrink(x []complex128, by float64) {
 	for i := range x {
-		x[i] *= complex(by, 0)
+		x[i] = complex(by*real(x[i]), by*imag(x[i]))
 	}
 }
 

@@ -5,12 +5,12 @@ import { useEffect, useRef, useState } from 'preact/hooks';
 import { uuidv7 } from 'uuidv7';
 import { Button } from '../parts/Button';
 import { Message } from '../parts/Message';
-import { t } from './words';
+import { cautions as usualCautions } from '../words/cautions';
 import * as api from './api';
-import { usualCautions } from './cautions';
 import { deskTime, shortHash } from './format';
 import type { Opened } from './JobPageView';
 import type { JobRecord } from './record';
+import { t } from './words';
 
 interface Props {
   opened: Opened;

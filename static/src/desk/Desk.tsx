@@ -1,9 +1,8 @@
 // The frame of the desk: who is signed in, where one is, the list on the left and the page beside it.
 
 import { useCallback, useEffect, useState } from 'preact/hooks';
-import type { Session } from '../types';
 import { Button } from '../parts/Button';
-import { t } from './words';
+import type { Session } from '../types';
 import * as api from './api';
 import { HeadBar } from './HeadBar';
 import { JobPageView } from './JobPageView';
@@ -13,6 +12,7 @@ import { useQueue } from './queue';
 import { QueueList } from './QueueList';
 import { forgetInvitation, useRoute } from './route';
 import { SignIn } from './SignIn';
+import { t } from './words';
 
 type Who = { is: 'asking' } | { is: 'unreachable' } | { is: 'nobody' } | { is: 'someone'; session: Session };
 
@@ -94,11 +94,11 @@ export function Desk() {
       </a>
       <HeadBar route={route} jobs={queue.jobs} user={user} search={search} onSearch={setSearch} onSignOut={leave} />
       {again && <SignIn again={user.name} onEntered={entered} />}
-      <div class="desk-body">
+      <main class="desk-body">
         {route.page === 'queue' && (
           <QueueList queue={queue} tab={route.tab} open={route.job} search={search} onSearch={setSearch} />
         )}
-        <main id="desk-main" class="desk-main" tabIndex={-1}>
+        <div id="desk-main" class="desk-main" tabIndex={-1}>
           {route.page === 'plan' && <PlanPage jobs={queue.jobs} onIssued={queue.refresh} />}
           {route.page === 'people' && <PeoplePage user={user} />}
           {route.page === 'queue' && job === null && (
@@ -114,8 +114,8 @@ export function Desk() {
               onDecided={queue.refresh}
             />
           )}
-        </main>
-      </div>
+        </div>
+      </main>
     </div>
   );
 }

@@ -1,12 +1,12 @@
 // The bar on top: the four lists with their counts, plan, people, the search box, and who is signed in.
 
 import { useEffect, useRef, useState } from 'preact/hooks';
-import type { JobSummary, User } from '../types';
 import { Button } from '../parts/Button';
-import { t } from './words';
+import type { JobSummary, User } from '../types';
 import { inTab } from './queue';
 import { hrefOf, tabs, type Route } from './route';
 import { applyTheme, keepTheme, keptTheme, themes, type Theme } from './theme';
+import { t } from './words';
 
 interface Props {
   route: Route;

@@ -1,13 +1,13 @@
 // The head of a job: site, what kind of visit, by whom, how much came in, which mount is looked at, where it stands.
 
 import type { RefObject } from 'preact';
+import { WordMark } from '../parts/WordMark';
 import type { JobPage } from '../types';
-import { t } from './words';
 import { day, deskTime, placeTime } from './format';
 import { crewName, whatOf } from './names';
 import type { JobRecord } from './record';
 import { hrefOf, type Tab } from './route';
-import { WordMark } from '../parts/WordMark';
+import { t } from './words';
 
 interface Props {
   heading: RefObject<HTMLHeadingElement | null>;

@@ -2,10 +2,9 @@
 // change under the eyes: new entries are announced, and loaded on a press.
 
 import { useCallback, useEffect, useRef, useState } from 'preact/hooks';
-import type { JobPage, JobSummary, QuarantinedEntry } from '../types';
 import { Button } from '../parts/Button';
 import { Message } from '../parts/Message';
-import { t } from './words';
+import type { JobPage, JobSummary, QuarantinedEntry } from '../types';
 import * as api from './api';
 import { DecisionFoot } from './DecisionFoot';
 import { JobHead } from './JobHead';
@@ -15,6 +14,7 @@ import { setPaperHead } from './paper';
 import { recordOf } from './record';
 import { hrefOf, tabOf, type Tab } from './route';
 import { VisitSection } from './VisitSection';
+import { t } from './words';
 
 export interface Opened {
   page: JobPage;

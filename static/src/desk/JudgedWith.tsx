@@ -1,8 +1,8 @@
 // What the verdict stands on besides the readings: radio, path, far end, surroundings, method.
 
 import type { Sheet, Verdict } from '../types';
-import { t } from './words';
 import { asGiven } from './format';
+import { t } from './words';
 
 interface Props {
   sheet: Sheet;

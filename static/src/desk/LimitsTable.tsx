@@ -3,8 +3,8 @@
 import { limitValue, standingOf } from '../draw/limit';
 import { LimitLine } from '../draw/LimitLine';
 import type { LimitName, LimitOutcome, Sheet, Verdict } from '../types';
-import { t } from './words';
 import { percent } from './format';
+import { t } from './words';
 
 interface Props {
   sheet: Sheet;

@@ -2,10 +2,10 @@
 
 import { useEffect, useState } from 'preact/hooks';
 import type { Entry } from '../types';
-import { t } from './words';
 import { deskTime, placeTime, shortHash } from './format';
 import type { Opened } from './JobPageView';
 import { fingerprint, type JobRecord, type LogLine } from './record';
+import { t } from './words';
 
 interface Props {
   opened: Opened;

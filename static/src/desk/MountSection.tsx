@@ -1,15 +1,15 @@
 // One mount of the job: what it came to, three drawings, limits, remedies, what it was judged with, its readings.
 
+import { WordMark } from '../parts/WordMark';
 import type { JobPage } from '../types';
-import { t } from './words';
+import { percent } from './format';
 import { JudgedWith } from './JudgedWith';
 import { LimitsTable } from './LimitsTable';
-import { percent } from './format';
 import { ReadingsTable } from './ReadingsTable';
 import type { JobRecord } from './record';
 import { Remedies } from './Remedies';
 import { StateDrawings } from './StateDrawings';
-import { WordMark } from '../parts/WordMark';
+import { t } from './words';
 
 interface Props {
   mount: JobPage['mounts'][number];

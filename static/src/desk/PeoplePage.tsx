@@ -1,13 +1,13 @@
 // Who may sign in, and a one-time link for somebody new.
 
 import { useEffect, useState } from 'preact/hooks';
-import type { Person, Role, User } from '../types';
 import { Button } from '../parts/Button';
 import { Message } from '../parts/Message';
-import { t } from './words';
+import type { Person, Role, User } from '../types';
 import * as api from './api';
 import { deskTime } from './format';
 import { crewName } from './names';
+import { t } from './words';
 
 export function PeoplePage({ user }: { user: User }) {
   const [people, setPeople] = useState<Person[] | null>(null);

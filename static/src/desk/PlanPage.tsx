@@ -1,9 +1,9 @@
 // Issuing a job: the visit, then each mount with its sheet. Nothing is sent before every mount can be judged.
 
 import { useEffect, useState } from 'preact/hooks';
-import { readNumber } from '../parts/number';
 import { Button } from '../parts/Button';
 import { Message } from '../parts/Message';
+import { readNumber } from '../parts/number';
 import type { JobSummary } from '../types';
 import * as api from './api';
 import { dropDraft, type JobDraft, keepDraft, keptDraft, newDraft, newMount } from './draft';

@@ -1,13 +1,13 @@
 // The list on the left: jobs of one tab, oldest first, each with what its mounts came to.
 
-import type { JobSummary } from '../types';
-import { crewName, whatOf } from './names';
 import { Button } from '../parts/Button';
-import { t } from './words';
+import { WordMark } from '../parts/WordMark';
+import type { JobSummary } from '../types';
 import { day, shortWhen } from './format';
+import { crewName, whatOf } from './names';
 import { inTab, matches, type Queue } from './queue';
 import { hrefOf, tabs, type Tab } from './route';
-import { WordMark } from '../parts/WordMark';
+import { t } from './words';
 
 interface Props {
   queue: Queue;
@@ -20,17 +20,17 @@ interface Props {
 export function QueueList({ queue, tab, open, search, onSearch }: Props) {
   if (queue.jobs === null) {
     return (
-      <aside class="queue">
+      <section class="queue">
         <p role="status" class="empty">
           {t(queue.trouble === null ? 'desk.loading' : 'desk.unreachable')}
         </p>
-      </aside>
+      </section>
     );
   }
   const all = inTab(queue.jobs, tab);
   const list = search.trim() === '' ? all : all.filter((j) => matches(j, search.trim()));
   return (
-    <aside class="queue" aria-label={t(`desk.tab.${tab}`)}>
+    <section class="queue" aria-label={t(`desk.tab.${tab}`)}>
       {/* Beside an open job its site is the heading of the page; without one the list is the page. */}
       {open === null ? <h1 class="spoken">{t(`desk.tab.${tab}`)}</h1> : <h2 class="spoken">{t(`desk.tab.${tab}`)}</h2>}
       <p class="queue-order">
@@ -80,7 +80,7 @@ export function QueueList({ queue, tab, open, search, onSearch }: Props) {
           </Button>
         </p>
       )}
-    </aside>
+    </section>
   );
 }
 

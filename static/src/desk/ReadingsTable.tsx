@@ -2,9 +2,9 @@
 // says why: nothing that was ever read is hidden.
 
 import type { Offsets, Quantity, Reading } from '../types';
-import { t } from './words';
 import { asGiven, placeTime } from './format';
 import type { JobRecord, MoveLine, ReadingLine } from './record';
+import { t } from './words';
 
 interface Props {
   mount: string;

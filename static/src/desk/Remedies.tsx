@@ -2,8 +2,8 @@
 
 import { limitValue } from '../draw/limit';
 import type { Remedy, Verdict } from '../types';
-import { t } from './words';
 import { doubt, percent } from './format';
+import { t } from './words';
 
 export function Remedies({ verdict }: { verdict: Verdict }) {
   const { remedies, deciding, missing } = verdict;

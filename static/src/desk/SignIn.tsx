@@ -1,12 +1,12 @@
 // The entrance: name and passphrase; or, with a one-time link, a new person choosing both.
 
-import { useEffect, useRef, useState } from 'preact/hooks';
 import type { ComponentChildren } from 'preact';
-import type { Session } from '../types';
+import { useEffect, useRef, useState } from 'preact/hooks';
 import { Button } from '../parts/Button';
 import { Message } from '../parts/Message';
-import { t } from './words';
+import type { Session } from '../types';
 import * as api from './api';
+import { t } from './words';
 
 /** Shortest passphrase that the server takes; fifteen is the advice (OWASP ASVS 5.0.0, V6.2.1). */
 const shortest = 8;

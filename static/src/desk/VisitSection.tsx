@@ -1,12 +1,12 @@
 // The visit as people lived it: cautions, notes, what was handed in with what was open, and the phone's own verdicts
 // beside the desk's, because the crew acted on the phone's.
 
+import { WordMark } from '../parts/WordMark';
 import type { JobPage, State, Verdict, Word } from '../types';
-import { t } from './words';
-import { usualCautions } from './cautions';
+import { cautions as usualCautions } from '../words/cautions';
 import { asGiven, deskTime, percent, placeTime } from './format';
 import type { JobRecord, Line } from './record';
-import { WordMark } from '../parts/WordMark';
+import { t } from './words';
 
 interface Props {
   page: JobPage;
@@ -73,12 +73,13 @@ function Planned({ page }: { page: JobPage }) {
 }
 
 function Cautions({ record }: { record: JobRecord }) {
-  const others = record.cautions.filter((c) => !usualCautions.includes(c.body.caution)).map((c) => c.body.caution);
+  const usual: readonly string[] = usualCautions;
+  const others = record.cautions.map((c) => c.body.caution).filter((c) => !usual.includes(c));
   return (
     <section class="cautions">
       <h3>{t('desk.cautions')}</h3>
       <ul>
-        {[...new Set([...usualCautions, ...others])].map((caution) => {
+        {[...new Set([...usual, ...others])].map((caution) => {
           const confirmed = record.cautions.filter((c) => c.body.caution === caution);
           return (
             <li key={caution} data-confirmed={confirmed.length > 0}>
@@ -102,15 +103,10 @@ function Cautions({ record }: { record: JobRecord }) {
   );
 }
 
+/** A caution that this version no longer asks for keeps the name it was logged under. */
 function cautionName(caution: string): string {
-  switch (caution) {
-    case 'height':
-    case 'weather':
-    case 'rf':
-      return t(`desk.caution.${caution}`);
-    default:
-      return caution;
-  }
+  const known = usualCautions.find((c) => c === caution);
+  return known === undefined ? caution : t(`caution.${known}.title`);
 }
 
 function Notes({ page, record }: Props) {

@@ -92,17 +92,14 @@ export class Crossplumb {
     return { climberLink: second };
   }
 
-  /** A job whose one mount is a sheet of testdata/jobs, with the limits and readings that the test needs. */
-  async job(sheetName, site, change = () => {}) {
+  /** A job whose one mount is a sheet of testdata/jobs. Its near end is unmeasured: the crew is to do that. */
+  async job(sheetName, site) {
     const sheet = JSON.parse(readFileSync(path.join(root, 'testdata', 'jobs', sheetName), 'utf8'));
-    for (const end of [sheet.near, sheet.far]) {
-      for (const antenna of end.antennas) {
-        for (const states of [antenna.position_mm, antenna.azimuth, antenna.tilt, antenna.skew]) {
-          if (states) Object.assign(states, { as_found: null, as_left: null });
-        }
+    for (const antenna of sheet.near.antennas) {
+      for (const states of [antenna.position_mm, antenna.azimuth, antenna.tilt, antenna.skew]) {
+        if (states) Object.assign(states, { as_found: null, as_left: null });
       }
     }
-    change(sheet);
     const id = uuidv7();
     await this.must('POST', '/api/jobs', {
       id,

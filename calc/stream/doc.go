@@ -22,12 +22,10 @@
 //	e, err := New(setup, plannedNear, plannedFar)   once per sheet: spectra, nodes, random points, the plan itself
 //	r := e.Evaluate(near, far)                      full accuracy: standard error at most 0.01 bit/s/Hz
 //	l := e.Around(near, far)                        once per state; its Anchor is Evaluate's answer
-//	v := l.Values(near, far)                        any geometry near it: common random numbers against the anchor
-//	s := l.Response(coordinates)                    for thousands of draws: curves along each coordinate
-//	v = s.At(deviations)                            a sum of those; s.Residual says what it leaves out
+//	r = l.Evaluate(near, far)                       any geometry near it: common random numbers against the anchor
 //
-// Times on one core of 2026 for two crossed panels at each end: New 5 to 15 ms, Evaluate 0.5 to 1 ms, Values 0.05 to
-// 0.15 ms, Response 3 ms with 18 coordinates, At 1 µs.
+// Times on one core of 2026 for two crossed panels at each end: New 5 to 15 ms, Engine.Evaluate 0.5 to 1 ms,
+// Local.Evaluate 0.05 to 0.15 ms.
 //
 // Of the bodies given later only position, azimuth, tilt and skew are read; patterns and ports are those given to New. An
 // Engine and what is made from it keep scratch space and serve one goroutine.

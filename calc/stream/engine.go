@@ -186,8 +186,6 @@ func prepare(setup Setup, near, far []antenna.Body) (*Engine, error) {
 			if !math.IsInf(a.XPR, 1) {
 				e.same, e.cross = a.XPR/(1+a.XPR), 1/(1+a.XPR)
 			}
-			e.fineNear = newSpectrum(e.near, &a.Near, fineTolerance)
-			e.fineFar = newSpectrum(e.far, &a.Far, fineTolerance)
 		}
 	}
 	return e, nil
@@ -268,16 +266,15 @@ func (e *Engine) load(near, far []antenna.Body, coarse bool) {
 		c.random = false
 		return
 	}
-	sn, sf := e.fineNear, e.fineFar
+	sn, sf, tolerance := &e.fineNear, &e.fineFar, fineTolerance
 	if coarse {
-		if e.coarseNear == nil {
-			e.coarseNear = newSpectrum(e.near, &e.setup.Around.Near, coarseTolerance)
-			e.coarseFar = newSpectrum(e.far, &e.setup.Around.Far, coarseTolerance)
-		}
-		sn, sf = e.coarseNear, e.coarseFar
+		sn, sf, tolerance = &e.coarseNear, &e.coarseFar, coarseTolerance
 	}
-	sn.spread(near, nt, c.rv, c.rh, c.trv, c.trh)
-	sf.spread(far, ft, c.sv, c.sh, c.tsv, c.tsh)
+	if *sn == nil {
+		*sn, *sf = newSpectrum(e.near, &e.setup.Around.Near, tolerance), newSpectrum(e.far, &e.setup.Around.Far, tolerance)
+	}
+	(*sn).spread(near, nt, c.rv, c.rh, c.trv, c.trh)
+	(*sf).spread(far, ft, c.sv, c.sh, c.tsv, c.tsh)
 	c.powers(e.scattered, e.same, e.cross)
 	if !e.ranked && c.random {
 		// Beams of the plan's direct path: strong and weak streams apart. No rate depends on it.
@@ -399,7 +396,7 @@ func (e *Engine) newLayout(triangular bool) *points {
 // anchorAt evaluates the plan to full accuracy and keeps its samples, to which later geometries are compared.
 func (e *Engine) anchorAt(near, far []antenna.Body) {
 	e.load(near, far, false)
-	e.anchor = e.describe(near, far)
+	e.anchor = e.describe(near, far, true)
 	e.settle()
 }
 
@@ -465,7 +462,7 @@ func (e *Engine) Planned() Result { return e.anchor }
 // of bodies must be the same (panics otherwise).
 func (e *Engine) Evaluate(near, far []antenna.Body) Result {
 	e.load(near, far, false)
-	r := e.describe(near, far)
+	r := e.describe(near, far, true)
 	if !e.channel.random {
 		e.channel.hold()
 		r.BitsPerSHz, r.EffectiveStreams = e.channel.rate(e.rho)
@@ -523,8 +520,9 @@ func (e *Engine) against(x, base *[replicates][]float64, m, se float64) (float64
 	return out, math.Hypot(own, slope*se)
 }
 
-// describe fills what of a result needs no sampling, from the loaded channel.
-func (e *Engine) describe(near, far []antenna.Body) Result {
+// describe fills what of a result needs no sampling, from the loaded channel. thorough says to compute every pair of
+// ports that may be the best, not the likeliest alone.
+func (e *Engine) describe(near, far []antenna.Body, thorough bool) Result {
 	c := e.channel
 	nf, nn := c.far, c.near
 	r := Result{}
@@ -538,7 +536,7 @@ func (e *Engine) describe(near, far []antenna.Body) Result {
 			r.MeanPower[f][n] = abs2(c.direct[i]) + c.power[i]
 		}
 	}
-	r.SingleChain, r.BestPair = e.best()
+	r.SingleChain, r.BestPair = e.best(thorough)
 	r.NearPointing = pointing(e.near, near, e.setup.Elevation)
 	r.FarPointing = pointing(e.far, far, -e.setup.Elevation)
 	r.NearEnvelope, r.FarEnvelope = e.envelopes()
@@ -561,31 +559,27 @@ func (e *Engine) envelopes() (near, far float64) {
 }
 
 // best is the rate of the best single pair and which it is. Pairs are ranked by a guess that is off by less than what
-// separates pairs worth telling apart; the best few are then computed.
-func (e *Engine) best() (bits float64, pair [2]int) {
+// separates pairs worth telling apart; the thorough then computes all that come near the top.
+func (e *Engine) best(thorough bool) (bits float64, pair [2]int) {
 	c := e.channel
-	guess := func(i int) float64 {
-		return singleChainGuess(e.setup.SNR*abs2(c.direct[i]), e.setup.SNR*c.power[i])
-	}
-	top := math.Inf(-1)
+	snr := e.setup.SNR
+	guess := func(i int) float64 { return singleChainGuess(snr*abs2(c.direct[i]), snr*c.power[i]) }
+	top, first := math.Inf(-1), 0
 	for i := range c.direct {
-		top = math.Max(top, guess(i))
+		if g := guess(i); g > top*(1+1e-12) || i == 0 {
+			top, first = g, i
+		}
 	}
-	tried := 0
-	var last [2]float64
+	rate := func(i int) float64 { return singleChain(snr*abs2(c.direct[i]), snr*c.power[i]) }
+	bits, pair = rate(first), [2]int{first / c.far, first % c.far}
+	if !thorough {
+		return bits, pair
+	}
 	for i := range c.direct {
-		if guess(i) < top-0.05 {
-			continue
-		}
-		// Ports of one kind are many and alike: one that differs by less than 1e-9 is not computed again.
-		now := [2]float64{e.setup.SNR * abs2(c.direct[i]), e.setup.SNR * c.power[i]}
-		if tried > 0 && math.Abs(now[0]-last[0]) <= 1e-9*(now[0]+now[1]) && math.Abs(now[1]-last[1]) <= 1e-9*(now[0]+now[1]) {
-			continue
-		}
-		last = now
-		tried++
-		if b := singleChain(now[0], now[1]); b > bits {
-			bits, pair = b, [2]int{i / c.far, i % c.far}
+		if i != first && guess(i) > top-0.05 {
+			if b := rate(i); b > bits*(1+1e-12) {
+				bits, pair = b, [2]int{i / c.far, i % c.far}
+			}
 		}
 	}
 	return bits, pair

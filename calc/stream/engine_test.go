@@ -79,7 +79,7 @@ func benchmarkEngine(b *testing.B, bodies int, around scatter.Surroundings) {
 			if turn > 0.1 {
 				turn = 0
 			}
-			l.Values(near, far)
+			l.Evaluate(near, far)
 		}
 	})
 	b.Logf("nodes fine %d %d coarse %d %d points %d", len(e.fineNear.nodes), len(e.fineFar.nodes), len(e.coarseNear.nodes), len(e.coarseFar.nodes), e.base.n*replicates)

@@ -59,30 +59,15 @@ func (e *Engine) few() (bits, streams [localReplicates]float64) {
 // Anchor is the accurate result for the geometry the Local was made about.
 func (l *Local) Anchor() Result { return l.anchor }
 
-// Values are the figures of a geometry near the anchor that depend on the whole channel.
-type Values struct {
-	BitsPerSHz, EffectiveStreams float64
-	NearEnvelope, FarEnvelope    float64 // −1 where there is none
-}
-
 // Evaluate computes a geometry near the anchor. StandardError is that of the difference to the anchor; what the anchor
 // itself is uncertain by comes on top and is the same for all.
 func (l *Local) Evaluate(near, far []antenna.Body) Result {
 	e := l.e
 	e.load(near, far, true)
-	r := e.describe(near, far)
+	r := e.describe(near, far, false)
 	r.BitsPerSHz, r.StandardError, r.EffectiveStreams, r.StreamsError = l.difference()
 	e.finish(&r)
 	return r
-}
-
-// Values is Evaluate without what costs time and can be had otherwise.
-func (l *Local) Values(near, far []antenna.Body) Values {
-	l.e.load(near, far, true)
-	var v Values
-	v.BitsPerSHz, _, v.EffectiveStreams, _ = l.difference()
-	v.NearEnvelope, v.FarEnvelope = l.e.envelopes()
-	return v
 }
 
 func (l *Local) difference() (bits, bitsError, streams, streamsError float64) {

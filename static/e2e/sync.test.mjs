@@ -198,6 +198,23 @@ test('a server restored from a backup gets again what it lost, and nothing is se
   assert.deepEqual(server.uploads(), [6, 2]);
 });
 
+test('a server that knows less than it once said gets it again, also without a new epoch; a refused number is no reason', async () => {
+  const ids = await notes(4);
+  let refuse = true;
+  server.spoil = (url, body) => (refuse && url === '/api/entries' && body.entries.some(({ raw }) => JSON.parse(raw).id === ids[1]) ? problem(400, 'malformed') : null);
+  await phone.push();
+  assert.deepEqual([...server.stored.keys()], [ids[0], ids[2], ids[3]], 'a gap at the second');
+  refuse = false;
+  const sent = server.uploads().length;
+  await phone.push();
+  await phone.push();
+  assert.equal(server.uploads().length, sent, 'the gap makes nothing go up again');
+  server.stored.delete(ids[0]);
+  await phone.push();
+  assert.deepEqual([...server.stored.keys()].sort(), [...ids].sort(), 'the refused one was tried again with the rest');
+  assert.deepEqual(await phone.counts(), { waiting: 0, safe: 4, needsPerson: 0 });
+});
+
 test('jobs come in with the entries of others, and own ones that come back are safe', async () => {
   const [mine] = await notes(1, 'mine');
   const raw = (await phone.ownEntries())[0].raw;
@@ -223,6 +240,13 @@ test('jobs come in with the entries of others, and own ones that come back are s
   assert.equal((await phone.counts()).waiting, 0);
   await phone.pull();
   assert.equal(pages, 1, 'a job that did not move is not fetched again');
+  summary.words = { m1: 'no-go' };
+  await phone.pull();
+  assert.deepEqual([(await phone.job(JOB)).summary.words, pages], [{ m1: 'no-go' }, 1], 'the word comes later, with the list');
+  server.epoch = 2;
+  await phone.push();
+  await phone.pull();
+  assert.equal(pages, 2, 'after a restore every job is fetched again');
 
   server.spoil = (url) => (url === '/api/jobs' ? json({ jobs: [] }) : null);
   await phone.pull();

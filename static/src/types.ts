@@ -172,6 +172,8 @@ export interface LimitOutcome {
 export interface Remedy {
   antenna: string;
   quantity: Quantity;
+  /** Of a position: which axis. */
+  axis?: 'right' | 'up' | 'forward' | null;
   change: number;
   unit: 'deg' | 'mm';
   direction: string;
@@ -231,7 +233,7 @@ export interface Verdict {
   remedies: Remedy[];
   missing: { antenna: string; quantity: Quantity }[];
   states: {
-    planned: { values: { name: LimitName; value: number }[] };
+    planned: { values: { name: LimitName; value: number | null }[] };
     as_found: StateOutcome | null;
     as_left: StateOutcome | null;
   };
@@ -429,7 +431,7 @@ export interface Counts {
 export type SyncState =
   /** Everything that was made here is on the server. */
   | 'up to date'
-  /** A request is under way. */
+  /** A request is under way, or about to be. */
   | 'sending'
   /** Something waits, or the last try found no server: it will be tried again. */
   | 'no coverage'

@@ -36,12 +36,14 @@ export interface DeviceRow {
   head: string;
 }
 
-/** What the server said of itself last: a new epoch means that it was restored and may have lost what we sent. */
+/** What the server said last. A new epoch, or less of this device than before: it was restored and may have lost what we sent. */
 export interface ServerRow {
   instance: string | null;
   epoch: number | null;
   head_seq: number | null;
   head_hash: string | null;
+  /** Up to which number of this device the server once said to have everything. */
+  contiguous: number;
 }
 
 export interface Settings {

@@ -59,9 +59,26 @@ function byVisit(a: PhoneJob, b: PhoneJob): number {
 }
 
 /** What the phone holds of each job, to ask the server only for those that moved on. */
-export async function heldHeads(): Promise<Map<string, number>> {
+export async function heldSummaries(): Promise<Map<string, JobSummary>> {
   const rows = await withDatabase((db) => db.getAll('jobs'));
-  return new Map(rows.map((row) => [row.id, row.summary.head_seq]));
+  return new Map(rows.map((row) => [row.id, row.summary]));
+}
+
+/** The server's line about a job, where nothing but the line is new: it judges a mount after it took the entries. */
+export async function keepSummary(summary: JobSummary): Promise<void> {
+  await write(['jobs'], async (tx) => {
+    const row = await tx.objectStore('jobs').get(summary.id);
+    if (row) await tx.objectStore('jobs').put({ ...row, summary });
+  });
+}
+
+/** A server that was restored may have other entries under the numbers that this phone knows: all jobs are asked for anew. */
+export async function doubtHeads(): Promise<void> {
+  await write(['jobs'], async (tx) => {
+    for (const row of await tx.objectStore('jobs').getAll()) {
+      await tx.objectStore('jobs').put({ ...row, summary: { ...row.summary, head_seq: -1 } });
+    }
+  });
 }
 
 export interface PulledEntry {

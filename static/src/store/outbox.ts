@@ -76,8 +76,8 @@ export async function sendAgainAfter(contiguous: number): Promise<number> {
     if (device) {
       const range = IDBKeyRange.bound([device.id, contiguous], [device.id, Infinity], true);
       for (const row of await tx.objectStore('entries').index('by device').getAll(range)) {
-        if (row.whereabouts !== 'safe') continue;
-        await tx.objectStore('entries').put({ ...row, whereabouts: 'waiting', seq: null });
+        if (row.whereabouts === 'waiting') continue;
+        await tx.objectStore('entries').put({ ...row, whereabouts: 'waiting', seq: null, reason: null });
         await tx.objectStore('outbox').put({ device_seq: row.device_seq, id: row.id });
         again++;
       }
@@ -91,7 +91,7 @@ export async function sendAgainAfter(contiguous: number): Promise<number> {
 export function knownServer(): Promise<ServerRow> {
   return withDatabase(async (db) => {
     const row = (await db.get('settings', 'server')) as ServerRow | undefined;
-    return row ?? { instance: null, epoch: null, head_seq: null, head_hash: null };
+    return row ?? { instance: null, epoch: null, head_seq: null, head_hash: null, contiguous: 0 };
   });
 }
 

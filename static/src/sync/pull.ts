@@ -2,7 +2,7 @@
 import type { Entry } from '../types.ts';
 import { changed } from '../store/database.ts';
 import { sha256 } from '../store/hash.ts';
-import { forgetJobs, heldHeads, keepPulled } from '../store/jobs.ts';
+import { forgetJobs, heldSummaries, keepPulled, keepSummary } from '../store/jobs.ts';
 import type { PulledEntry } from '../store/jobs.ts';
 import { localTime } from '../store/time.ts';
 import { ask } from './server.ts';
@@ -10,10 +10,17 @@ import { isJobList, isJobPage } from './shapes.ts';
 
 export async function pull(): Promise<void> {
   const { jobs } = await ask('GET', '/api/jobs', undefined, isJobList);
-  const held = await heldHeads();
+  const held = await heldSummaries();
   let news = false;
   for (const summary of jobs) {
-    if (held.get(summary.id) === summary.head_seq) continue;
+    const before = held.get(summary.id);
+    if (before?.head_seq === summary.head_seq) {
+      if (JSON.stringify(before) !== JSON.stringify(summary)) {
+        await keepSummary(summary);
+        news = true;
+      }
+      continue;
+    }
     const page = await ask('GET', `/api/jobs/${encodeURIComponent(summary.id)}`, undefined, isJobPage);
     const entries: PulledEntry[] = [];
     for (const one of page.entries) {

@@ -1,4 +1,5 @@
 // Sends what waits, oldest first, in batches; an entry is settled only by an answer about that very entry.
+import { doubtHeads } from '../store/jobs.ts';
 import { localTime } from '../store/time.ts';
 import { deviceId, knownServer, nextBatch, noteServer, sendAgainAfter, settle } from '../store/outbox.ts';
 import type { Outgoing, Settled } from '../store/outbox.ts';
@@ -61,14 +62,19 @@ export function answersFor(batch: Outgoing[], answer: UploadAnswer): Settled[] {
     }));
 }
 
-/** A server with another epoch or identity was restored or replaced: what it no longer has is sent again. */
+/**
+ * A server with another epoch or identity, or one that knows less of this device than it once said, was restored or
+ * replaced: what it no longer has is sent again. (A number that it never had is no reason: it may have been refused.)
+ */
 async function compareEpoch(): Promise<void> {
   const state = await ask('GET', '/api/state', undefined, isServerState);
   const known = await knownServer();
   const own = await deviceId();
-  const other = known.instance !== state.instance || known.epoch !== state.epoch;
-  if (other && own !== null && known.instance !== null) {
-    await sendAgainAfter(state.devices[own]?.max_contiguous_seq ?? 0);
+  const contiguous = (own === null ? undefined : state.devices[own]?.max_contiguous_seq) ?? 0;
+  const other = known.instance !== null && (known.instance !== state.instance || known.epoch !== state.epoch);
+  if (other || contiguous < known.contiguous) {
+    await sendAgainAfter(contiguous);
+    await doubtHeads();
   }
-  await noteServer({ instance: state.instance, epoch: state.epoch, head_seq: state.head.seq, head_hash: state.head.hash });
+  await noteServer({ instance: state.instance, epoch: state.epoch, head_seq: state.head.seq, head_hash: state.head.hash, contiguous });
 }

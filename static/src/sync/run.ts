@@ -9,7 +9,7 @@ import { pull } from './pull.ts';
 import { push } from './push.ts';
 import { NoAnswer, ServerProblem } from './server.ts';
 import { readSession, session } from './session.ts';
-import { note, noteState } from './status.ts';
+import { note, noteState, status } from './status.ts';
 import { watchForUpdates } from './update.ts';
 
 /** While all goes well the desk's decisions are looked for this often, as long as the page is looked at. */
@@ -118,7 +118,7 @@ async function round(): Promise<void> {
 
 async function countWaiting(): Promise<boolean> {
   const { waiting } = await counts();
-  const more = waiting > 0;
-  note({ waiting });
-  return more;
+  // "up to date" with something waiting would be untrue, also for the moment before it goes up.
+  note(waiting > 0 && status.value.state === 'up to date' ? { waiting, state: 'sending' } : { waiting });
+  return waiting > 0;
 }

@@ -243,6 +243,9 @@ test('jobs come in with the entries of others, and own ones that come back are s
   summary.words = { m1: 'no-go' };
   await phone.pull();
   assert.deepEqual([(await phone.job(JOB)).summary.words, pages], [{ m1: 'no-go' }, 1], 'the word comes later, with the list');
+  await phone.push();
+  await phone.pull();
+  assert.equal(pages, 1);
   server.epoch = 2;
   await phone.push();
   await phone.pull();

@@ -19,6 +19,11 @@ type Deciding struct {
 // axes of a position) scaled.
 func (j *judge) with(b *belief, body int, q quantity, by float64) *belief {
 	c := *b
+	if b.surface != nil && b.surface.rough { // one by one would take too long for a ranking
+		smooth := *b.surface
+		smooth.rough = false
+		c.surface = &smooth
+	}
 	c.est = append([]doubt.Estimate(nil), b.est...)
 	last := q
 	if q == right {
@@ -36,13 +41,14 @@ func firmness(p float64) float64 { return math.Max(p, 1-p) }
 
 // deciding finds the near reading that, were it exact, would bring the probability
 // nearest to a word.
-func (j *judge) deciding(b *belief, o *outcome) *Deciding {
+func (j *judge) deciding(b *belief) *Deciding {
 	type candidate struct {
 		body int
 		q    quantity
 	}
 	var best candidate
 	most := -1.0
+	now := firmness(j.runEvery(j.with(b, 0, skew, 1), 4).joint)
 	for i := range j.near {
 		for _, q := range [4]quantity{skew, tilt, azimuth, right} {
 			if b.looks[j.at(i, q)] == 0 && !(q == right && b.looks[j.at(i, up)]+b.looks[j.at(i, forward)] > 0) {
@@ -54,7 +60,7 @@ func (j *judge) deciding(b *belief, o *outcome) *Deciding {
 			}
 		}
 	}
-	if most < 0 || most <= firmness(o.joint)+0.005 {
+	if most < 0 || most <= now+0.005 {
 		return nil // no reading here decides: the far end's doubt does
 	}
 	at := j.at(best.body, best.q)

@@ -84,27 +84,48 @@ func (j *judge) run(b *belief) *outcome {
 	return out
 }
 
-// runEvery judges with every stride-th draw: a lattice again, only thinner.
+// runEvery judges with every stride-th draw: a lattice again, only thinner. Where a
+// limit needs the stream computation its responses come from the belief's surface;
+// where that is too rough they are computed draw by draw, with fewer draws.
 func (j *judge) runEvery(b *belief, stride int) *outcome {
 	s := spreadOf(b)
 	draws := j.drawsOf(s.dims)
+	var response, delta []float64
+	if j.flow != nil {
+		if b.surface == nil {
+			b.surface = j.flow.about(b, b.only)
+			b.surface.rough = j.rough(b, &s, draws)
+		}
+		response, delta = make([]float64, j.flow.size), make([]float64, len(b.surface.axes))
+		if b.surface.rough {
+			stride = max(stride, directStride)
+			j.flow.exact(b.surface.at) // the anchor of what is computed below
+		}
+	}
 	n := draws.N / stride
 	out := &outcome{values: make([][]float64, len(j.limits)), met: make([]float64, len(j.limits))}
 	for k := range j.limits {
-		if j.limits[k].value != nil {
+		if j.limits[k].judged() {
 			out.values[k] = make([]float64, n)
 		}
 	}
 	x := make([]float64, len(s.base))
 	for i := range n {
 		s.draw(draws.At(i*stride), x)
+		if b.surface != nil {
+			if b.surface.rough {
+				copy(response, j.flow.nearby(x))
+			} else {
+				b.surface.response(x, delta, response)
+			}
+		}
 		all := true
 		for k := range j.limits {
 			l := &j.limits[k]
-			if l.value == nil {
+			if !l.judged() {
 				continue
 			}
-			v := l.value(x)
+			v := j.valueOf(l, x, response)
 			out.values[k][i] = v
 			if l.met(v) {
 				out.met[k]++
@@ -123,6 +144,55 @@ func (j *judge) runEvery(b *belief, stride int) *outcome {
 	return out
 }
 
+// directStride thins the draws where each needs the stream computation itself: 512
+// of them, which leaves a probability at the guard uncertain by 0.007.
+const directStride = 4
+
+// valueOf is what a judged limit is about, at x with its response.
+func (j *judge) valueOf(l *limit, x, response []float64) float64 {
+	if l.flows {
+		return j.flow.metric(l.metric, response)
+	}
+	return l.value(x)
+}
+
+// rough tells whether a surface is not good enough to judge by: in a few draws
+// computed in full it is off by more than a fifth of a metric's doubt, and the
+// limit is near enough for that to matter.
+func (j *judge) rough(b *belief, s *spread, draws *doubt.Draws) bool {
+	const checks = 12
+	off := make([]float64, len(j.limits))
+	sum, square := make([]float64, len(j.limits)), make([]float64, len(j.limits))
+	x := make([]float64, len(s.base))
+	response, delta := make([]float64, j.flow.size), make([]float64, len(b.surface.axes))
+	for i := range checks {
+		s.draw(draws.At((i*2+1)*draws.N/(2*checks)), x)
+		full := j.flow.nearby(x)
+		b.surface.response(x, delta, response)
+		for k := range j.limits {
+			if l := &j.limits[k]; l.flows {
+				v := j.flow.metric(l.metric, full)
+				d := v - j.flow.metric(l.metric, response)
+				off[k] += d * d / checks
+				sum[k] += v / checks
+				square[k] += v * v / checks
+			}
+		}
+	}
+	for k := range j.limits {
+		l := &j.limits[k]
+		if !l.flows {
+			continue
+		}
+		u := math.Sqrt(math.Max(square[k]-sum[k]*sum[k], 0))
+		miss := math.Sqrt(off[k])
+		if miss > u/5 && miss > negligible && math.Abs(l.margin(sum[k])) < 4*(u+miss) {
+			return true
+		}
+	}
+	return false
+}
+
 // drawsOf returns draws of at least that many variables, made once.
 func (j *judge) drawsOf(dims int) *doubt.Draws {
 	if j.draws == nil || j.draws.Dims < dims {
@@ -136,13 +206,14 @@ func (j *judge) drawsOf(dims int) *doubt.Draws {
 // TestDrawsAreEnough.
 const blocks = 1
 
-// score is how well the best estimate alone holds the limits: the least margin
-// over the doubt of its limit. It orders moves; the probability decides.
-func (j *judge) score(x []float64, scale []float64) float64 {
+// score is how well a geometry alone holds the limits: the least margin over the
+// doubt of its limit. It orders moves; the probability decides. A nil response
+// leaves the limits of the stream computation aside.
+func (j *judge) score(x, response, scale []float64) float64 {
 	worst := math.Inf(1)
 	for k := range j.limits {
-		if l := &j.limits[k]; l.value != nil {
-			worst = math.Min(worst, l.margin(l.value(x))/scale[k])
+		if l := &j.limits[k]; l.judged() && (!l.flows || response != nil) {
+			worst = math.Min(worst, l.margin(j.valueOf(l, x, response))/scale[k])
 		}
 	}
 	return worst

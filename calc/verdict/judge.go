@@ -69,6 +69,7 @@ type NotJudged struct{ Limit, Why string }
 type judge struct {
 	*model
 	limits []limit
+	flow   *flow // nil where no limit needs the stream computation
 	draws  *doubt.Draws
 	dims   int // variables that the widest state needs
 }
@@ -124,10 +125,34 @@ func Judge(s *sheet.Sheet) (*Verdict, *codec.Problem) {
 		v.Remedies = j.remedies(b, o)
 	}
 	if v.Word == MeasureAgain && len(v.Missing) == 0 {
-		v.Deciding = j.deciding(b, o)
+		v.Deciding = j.deciding(b)
 	}
 	v.Reason = j.reason(v, b, o)
+	if v.Reason.Code != MissingReading && len(v.NotJudged) == 0 {
+		if other, which := j.otherCase(b, wordOf(o.joint)); other != "" {
+			v.Reason.Code = SurroundingsDecide
+			v.Reason.Text = "The surroundings decide, not a reading: " + v.Word + " in their median case, " + other + " with " + which + " spreads. " + v.Reason.Text
+		}
+	}
 	return v, nil
+}
+
+// otherCase judges the narrow and the wide case of the surroundings' class, and
+// returns the first word that differs from that of the median, with its case.
+func (j *judge) otherCase(b *belief, word string) (other, which string) {
+	if j.flow == nil {
+		return "", ""
+	}
+	for i, shift := range j.flow.cases(b.values()) {
+		moved := *b
+		surface := *b.surface
+		surface.rough, surface.shift = false, shift
+		moved.surface = &surface
+		if w := wordOf(j.runEvery(&moved, 2).joint); w != word {
+			return w, [2]string{"narrow (10 %)", "wide (90 %)"}[i]
+		}
+	}
+	return "", ""
 }
 
 // newJudge makes the sheet and its limits ready.
@@ -137,6 +162,33 @@ func newJudge(s *sheet.Sheet) (*judge, *codec.Problem) {
 	}
 	j := &judge{model: newModel(s)}
 	j.limits = j.model.limits()
+	for k := range j.limits {
+		l := &j.limits[k]
+		if !l.flows {
+			continue
+		}
+		if j.flow == nil {
+			measuredAt := j.plan
+			if b, p := j.believe(sheet.AsFound); p != nil {
+				return nil, p
+			} else if b.readings > 0 {
+				measuredAt = b.values()
+			}
+			var why string
+			if j.flow, why = j.newFlow(measuredAt); j.flow == nil {
+				j.unjudged(why)
+				break
+			}
+		}
+		if l.whyNot = j.flow.whyNot(l.metric); l.whyNot != "" {
+			l.flows = false
+			continue
+		}
+		j.flow.want(l.metric)
+	}
+	if j.flow != nil && j.flow.size == 0 {
+		j.flow = nil // asked for, but nothing of it applies
+	}
 	applies := false
 	for k := range j.limits {
 		applies = applies || j.limits[k].whyNot == ""
@@ -145,6 +197,15 @@ func newJudge(s *sheet.Sheet) (*judge, *codec.Problem) {
 		return nil, &codec.Problem{Code: codec.Impossible, Field: "limits", Message: "none of the limits applies to this mount (" + j.limits[0].whyNot + "); set one that does"}
 	}
 	return j, nil
+}
+
+// unjudged marks every limit that needs the stream computation.
+func (j *judge) unjudged(why string) {
+	for k := range j.limits {
+		if j.limits[k].flows {
+			j.limits[k].flows, j.limits[k].whoNot = false, why
+		}
+	}
 }
 
 // word is the word for a probability; never go while a reading or a limit is
@@ -200,10 +261,13 @@ func (j *judge) planned() []PlannedValue {
 	out := make([]PlannedValue, 0, len(j.limits))
 	for k := range j.limits {
 		l := &j.limits[k]
-		if l.value == nil {
-			continue
+		switch {
+		case l.value != nil:
+			out = append(out, PlannedValue{l.Name, finite(l.value(j.plan))})
+		case l.flows:
+			v := j.flow.metric(l.metric, j.flow.of(&j.flow.planned, j.flow.planned.BitsPerSHz))
+			out = append(out, PlannedValue{l.Name, finite(v)})
 		}
-		out = append(out, PlannedValue{l.Name, finite(l.value(j.plan))})
 	}
 	return out
 }
@@ -212,7 +276,7 @@ func (j *judge) planned() []PlannedValue {
 func (j *judge) critical(o *outcome) int {
 	worst := -1
 	for k := range j.limits {
-		if j.limits[k].value != nil && (worst < 0 || o.met[k] < o.met[worst]) {
+		if j.limits[k].judged() && (worst < 0 || o.met[k] < o.met[worst]) {
 			worst = k
 		}
 	}

@@ -15,9 +15,11 @@ type judgeOf func(x []float64) float64
 type limit struct {
 	sheet.Limit
 	kind   sheet.LimitKind
-	value  judgeOf // nil: not applicable or not judged
-	whyNot string  // why it does not apply to this mount
-	whoNot string  // why it applies but could not be judged
+	value  judgeOf // nil: not applicable, not judged, or a metric of the stream computation
+	flows  bool    // a metric of the stream computation
+	metric metric
+	whyNot string // why it does not apply to this mount
+	whoNot string // why it applies but could not be judged
 }
 
 // margin is how far a value is on the good side.
@@ -30,6 +32,9 @@ func (l *limit) margin(v float64) float64 {
 
 // met tells whether a value holds the limit.
 func (l *limit) met(v float64) bool { return l.margin(v) >= 0 }
+
+// judged tells whether the limit has a value.
+func (l *limit) judged() bool { return l.value != nil || l.flows }
 
 // limits makes the sheet's limits ready, in the order of a report.
 func (m *model) limits() []limit {
@@ -86,7 +91,7 @@ func (m *model) prepare(l *limit) {
 			l.value = m.displacement()
 		}
 	default:
-		l.whoNot = "the stream computation is not part of this version yet"
+		l.metric, l.flows = metricOf(l.Name)
 	}
 }
 
@@ -222,7 +227,7 @@ func (m *model) beams() []beam {
 		if m.bodies[i].far {
 			rise = m.rise[1]
 		}
-		out[i] = beam{m: m, body: i, pattern: m.bodies[i].pattern(m.sheet.Radio.WavelengthM())}
+		out[i] = beam{m: m, body: i, pattern: m.bodies[i].shape}
 		out[i].sin, out[i].cos = math.Sincos(rise)
 	}
 	return out
@@ -233,7 +238,11 @@ func (m *model) beams() []beam {
 // body's own frame (see package antenna), there as azimuth and elevation.
 func (b *beam) loss(x []float64) float64 {
 	sk, ck := math.Sincos(x[b.m.at(b.body, skew)])
-	st, ct := math.Sincos(x[b.m.at(b.body, tilt)])
+	lean := x[b.m.at(b.body, tilt)]
+	if b.m.bodies[b.body].symmetric {
+		lean = -lean // read as a lean forward; see model.body
+	}
+	st, ct := math.Sincos(lean)
 	sa, ca := math.Sincos(x[b.m.at(b.body, azimuth)])
 	r, f := -b.cos*sa, b.cos*ca
 	u, f := b.sin*ct-f*st, f*ct+b.sin*st

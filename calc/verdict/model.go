@@ -3,6 +3,7 @@ package verdict
 import (
 	"math"
 
+	"crossplumb/calc/antenna"
 	"crossplumb/calc/codec"
 	"crossplumb/calc/doubt"
 	"crossplumb/calc/polar"
@@ -56,6 +57,8 @@ type body struct {
 	antenna   *sheet.Antenna
 	symmetric bool
 	datum     bool // position taken as exact
+	shape     *antenna.Pattern
+	ports     []antenna.Port
 }
 
 type port struct {
@@ -76,7 +79,9 @@ func newModel(s *sheet.Sheet) *model {
 		for i := range end.Antennas {
 			a := &end.Antennas[i]
 			b := len(m.bodies)
-			m.bodies = append(m.bodies, body{far: e == 1, antenna: a, symmetric: a.Symmetric(), datum: i == 0})
+			made := body{far: e == 1, antenna: a, symmetric: a.Symmetric(), datum: i == 0, ports: portsOf(a)}
+			made.shape = made.pattern(s.Radio.WavelengthM())
+			m.bodies = append(m.bodies, made)
 			for j := range a.Elements {
 				m.ports[e] = append(m.ports[e], newPort(&a.Elements[j], b))
 			}
@@ -198,6 +203,9 @@ type belief struct {
 	measured []bool           // read, or exact by convention
 	readings int              // of the near end
 	looks    []int            // readings pooled for each number
+
+	surface *surface // of the stream metrics, built when first needed
+	only    []bool   // the numbers that it has axes for; nil: all
 }
 
 // believe pools the readings of a state. What was not read is the plan, with the

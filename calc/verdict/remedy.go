@@ -54,7 +54,12 @@ func (j *judge) remedies(b *belief, o *outcome) []Remedy {
 	}
 	scale := j.scales(o)
 	x := b.values()
-	now := j.score(x, scale)
+	var at []float64
+	if j.flow != nil {
+		at = j.flow.exact(x) // and what is tried below is near this
+	}
+	now := j.score(x, at, scale)
+	widen := j.limits[critical].flows // spacing may help beyond the plan
 	type move struct {
 		body  int
 		q     quantity
@@ -68,7 +73,7 @@ func (j *judge) remedies(b *belief, o *outcome) []Remedy {
 			if !b.measured[at] || b.looks[at] == 0 {
 				continue
 			}
-			by, score := j.bestMove(x, at, q, scale)
+			by, score := j.bestMove(b, x, at, q, scale, widen)
 			if math.Abs(by) >= q.step()/2 && score > now+0.05 {
 				moves = append(moves, move{i, q, by, score})
 			}
@@ -92,6 +97,10 @@ func (j *judge) remedies(b *belief, o *outcome) []Remedy {
 	var out []Remedy
 	for _, m := range moves {
 		moved := *b
+		if j.flow != nil {
+			moved.surface, moved.only = nil, b.surface.active(len(b.est))
+			moved.only[j.at(m.body, m.q)] = true
+		}
 		moved.est = append([]doubt.Estimate(nil), b.est...)
 		moved.est[j.at(m.body, m.q)].Value += m.by
 		after := j.run(&moved)
@@ -136,14 +145,53 @@ func (j *judge) scales(o *outcome) []float64 {
 	return scale
 }
 
-// bestMove searches one number for the best score: a coarse walk both ways, finer
-// near the start, then golden sections; rounded to what a hand can set.
-func (j *judge) bestMove(x []float64, at int, q quantity, scale []float64) (by, score float64) {
+// bestMove searches one number for the best score: by a coarse walk both ways,
+// finer near the start, and golden sections for what needs no stream computation or
+// lies near enough for its surface; then it tries the finds, the plan, and for
+// spacing a quarter and half a wavelength to either side, by the stream computation
+// itself. The move is rounded to what a hand can set.
+func (j *judge) bestMove(b *belief, x []float64, at int, q quantity, scale []float64, widen bool) (by, score float64) {
 	y := append([]float64(nil), x...)
+	var delta, response []float64
+	if b.surface != nil {
+		delta, response = make([]float64, len(b.surface.axes)), make([]float64, j.flow.size)
+	}
 	value := func(d float64) float64 {
 		y[at] = x[at] + d
-		return j.score(y, scale)
+		if b.surface == nil {
+			return j.score(y, nil, scale)
+		}
+		b.surface.response(y, delta, response)
+		return j.score(y, response, scale)
 	}
+	plan := j.plan[at] - x[at]
+	round := func(d float64) float64 { return math.Round(d/q.step()) * q.step() }
+	found := round(j.search(value, q, plan))
+	if b.surface == nil {
+		return found, value(found)
+	}
+	tries := []float64{found, round(plan)}
+	if widen && !q.angular() {
+		wave := j.sheet.Radio.WavelengthM()
+		for _, part := range [4]float64{-0.5, -0.25, 0.25, 0.5} {
+			tries = append(tries, round(part*wave))
+		}
+	}
+	score = math.Inf(-1)
+	for i, d := range tries {
+		if d == 0 || slices.Contains(tries[:i], d) {
+			continue
+		}
+		y[at] = x[at] + d
+		if v := j.score(y, j.flow.nearby(y), scale); v > score {
+			by, score = d, v
+		}
+	}
+	return by, score
+}
+
+// search is a coarse walk both ways from 0, then golden sections about the best.
+func (j *judge) search(value func(float64) float64, q quantity, plan float64) float64 {
 	best, bestAt := value(0), 0.0
 	width := 0.0
 	const steps = 24
@@ -156,8 +204,7 @@ func (j *judge) bestMove(x []float64, at int, q quantity, scale []float64) (by, 
 			}
 		}
 	}
-	plan := j.plan[at] - x[at] // the plan is always worth a look
-	if v := value(plan); v >= best {
+	if v := value(plan); v >= best { // the plan is always worth a look
 		best, bestAt, width = v, plan, math.Max(width, q.step()*10)
 	}
 	if width == 0 {
@@ -181,6 +228,5 @@ func (j *judge) bestMove(x []float64, at int, q quantity, scale []float64) (by, 
 	if m := (lo + hi) / 2; value(m) > best {
 		bestAt = m
 	}
-	by = math.Round(bestAt/q.step()) * q.step()
-	return by, value(by)
+	return bestAt
 }

@@ -33,7 +33,7 @@ type Pattern struct {
 	BeamwidthEl    float64 // full half-power width in elevation, rad: Panel, Omni
 	FrontToBack    float64 // largest attenuation, dB: Panel, Dish
 	Sidelobe       float64 // largest attenuation of the vertical cut (Panel, Omni), level below the peak at which the side-lobe envelope starts (Dish), dB
-	ElectricalTilt float64 // beam above the boresight, rad, up positive: Panel, Omni
+	ElectricalTilt float64 // beam above the boresight, rad, up positive: Panel, Omni; Cuts, whose elevation cut it shifts
 
 	azCut, elCut []float64 // Cuts: attenuation in dB on uniform grids, see NewCuts
 	floor        float64   // Cuts: largest attenuation found in either cut, dB
@@ -191,7 +191,7 @@ func (p *Pattern) Attenuation(az, el float64) float64 {
 	case Dish:
 		return p.dish(math.Acos(math.Min(math.Max(math.Cos(az)*math.Cos(el), -1), 1)))
 	case Cuts:
-		return math.Min(look(p.azCut, (az+math.Pi)/cutStep)+look(p.elCut, (el+math.Pi/2)/cutStep), p.floor)
+		return math.Min(look(p.azCut, (az+math.Pi)/cutStep)+look(p.elCut, (el-p.ElectricalTilt+math.Pi/2)/cutStep), p.floor)
 	}
 	return 0
 }

@@ -9,7 +9,13 @@ import "crossplumb/calc/codec"
 //     readings are pooled, a new one never replaces an old one.
 //   - bolt.moved drops the as-left readings of its antenna and quantity so far:
 //     they speak of a place where the antenna no longer is.
-//   - reading.withdrawn takes away the reading whose entry it names.
+//   - reading.withdrawn takes away the reading whose entry it names, and likewise
+//     figures and obstacles.
+//   - figures.read puts the page of one end into the radio figures: the last one of
+//     each end counts. calc/fault reads what is in them.
+//   - power_control.confirmed says in the radio figures that automatic transmit power
+//     control is off.
+//   - obstacle.noted adds an obstacle to the path.
 //
 // Entries of any other kind are passed over. The document given is not changed.
 func Fold(doc *codec.Value, entries []*codec.Value) (*codec.Value, *codec.Problem) {
@@ -35,6 +41,12 @@ func Fold(doc *codec.Value, entries []*codec.Value) (*codec.Value, *codec.Proble
 			p = book.withdraw(item, body)
 		case kind == "bolt.moved":
 			p = book.move(item, body)
+		case kind == "figures.read":
+			p = book.figure(item, body, id)
+		case kind == "power_control.confirmed":
+			book.controlOff = true
+		case kind == "obstacle.noted":
+			p = book.note(item, body, id)
 		}
 		if p != nil {
 			return nil, p
@@ -47,6 +59,7 @@ func Fold(doc *codec.Value, entries []*codec.Value) (*codec.Value, *codec.Proble
 type book struct {
 	antennas map[string]*codec.Value
 	pages    map[page][]line
+	survey
 }
 
 type page struct{ antenna, quantity, state string }
@@ -67,7 +80,7 @@ func fieldOf(quantity string) string {
 var quantities = []string{"skew", "tilt", "azimuth", "position"}
 
 func openBook(doc *codec.Value) *book {
-	b := &book{map[string]*codec.Value{}, map[page][]line{}}
+	b := &book{map[string]*codec.Value{}, map[page][]line{}, openSurvey(doc)}
 	list := doc.Get("near").Get("antennas")
 	if list == nil {
 		return b // a probe has no antennas
@@ -148,6 +161,7 @@ func (b *book) withdraw(item, body *codec.Value) *codec.Problem {
 			}
 		}
 	}
+	b.survey.withdraw(id)
 	return nil // its reading is gone already: a bolt moved since
 }
 
@@ -202,6 +216,7 @@ func (b *book) close(doc *codec.Value) *codec.Value {
 	near.Set("antennas", antennas)
 	whole := copyOf(doc)
 	whole.Set("near", near)
+	b.survey.close(whole)
 	return whole
 }
 

@@ -27,6 +27,9 @@ func Read(v *codec.Value) (*Sheet, *codec.Problem) {
 	sub("far", func(c *codec.Value) (p *codec.Problem) { s.Far, p = readMount(c); return })
 	sub("path", func(c *codec.Value) (p *codec.Problem) { s.Path, p = readPath(c); return })
 	sub("surroundings", func(c *codec.Value) (p *codec.Problem) { s.Surroundings, p = readSurroundings(c); return })
+	landmarks, lp := readLandmarks(f.MaybeItems("landmarks", 0, MaxLandmarks))
+	s.Landmarks = landmarks
+	f.Fail(lp)
 	if figures := f.Maybe("radio_figures"); figures != nil {
 		s.RadioFigures = figures.Free()
 	}
@@ -243,6 +246,32 @@ func readPath(v *codec.Value) (Path, *codec.Problem) {
 		BearingDeg:   f.Number("bearing_deg", codec.Between(0, 360)),
 		ElevationDeg: f.NumberOr("elevation_deg", 0, codec.Between(-89, 89)),
 		DistanceM:    f.Number("distance_m", codec.Range{Min: 1, Max: 1e6, Suggestion: "the distance between the ends in metres"}),
+		HeightDatum:  f.MaybeText("height_datum"),
+		KFactor:      f.MaybeNumber("k_factor", codec.Range{Min: 0.2, Max: 100, Suggestion: "the effective earth radius factor, 4/3 in the median atmosphere"}),
+		AboveGroundM: f.MaybeNumber("above_ground_m", codec.Range{Min: 0, OpenMin: true, Max: 10000, Suggestion: "metres of the antennas above the ground they cover"}),
+	}
+	for _, end := range []struct {
+		name string
+		to   **Place
+	}{{"near_at", &p.NearAt}, {"far_at", &p.FarAt}} {
+		if c := f.Maybe(end.name); c != nil {
+			place, problem := readPlace(c)
+			f.Fail(problem)
+			*end.to = place
+		}
+	}
+	length := p.DistanceM
+	if f.Problem() != nil {
+		length = 0
+	}
+	for _, item := range f.MaybeItems("obstacles", 0, MaxObstacles) {
+		o, problem := readObstacle(item, length)
+		f.Fail(problem)
+		p.Obstacles = append(p.Obstacles, o)
+	}
+	// Obstacles alone do not ask for it: a crew that notes one cannot mend the plan.
+	if f.Problem() == nil && !v.Described() && (p.NearAt != nil || p.FarAt != nil) && p.HeightDatum == "" {
+		f.Fail(f.Refuse("height_datum", codec.MissingField, "name what all heights are measured from, as in \"WGS 84 ellipsoid\" or \"mean sea level\""))
 	}
 	return p, f.Done()
 }

@@ -16,6 +16,7 @@ type Sheet struct {
 	Near, Far    Mount
 	Path         Path
 	Surroundings Surroundings
+	Landmarks    []Landmark   // known points in sight of the near mount
 	RadioFigures *codec.Value // read by calc/fault; nil where there are none
 	Limits       []Limit
 }
@@ -211,6 +212,14 @@ type Path struct {
 	BearingDeg   float64 // true
 	ElevationDeg float64
 	DistanceM    float64
+
+	// What calc/aim works out bearing, profile and expected level from; nil or empty
+	// where nobody surveyed it.
+	NearAt, FarAt *Place
+	HeightDatum   string // what every height of the sheet is above
+	KFactor       *float64
+	AboveGroundM  *float64 // the near antennas above the ground that their beams cover
+	Obstacles     []Obstacle
 }
 
 // Surroundings hold exactly one of Class, Spreads and Reflectors.

@@ -166,6 +166,9 @@ func (e Entry) ReadBody() (any, error) {
 			return ""
 		}, "remark", "base_seq")
 	}
+	if content, known, err := readAimBody(e); known {
+		return content, err
+	}
 	return nil, refuse(UnknownKind, "kind %q is not known here", clip(e.Kind))
 }
 

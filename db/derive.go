@@ -47,7 +47,7 @@ func deriveFromEntry(ctx context.Context, tx *sql.Tx, seq int64, e Entry) error 
 		if stage == StageDrafted {
 			stage = StageIssued
 		}
-	case CautionConfirmed, ReadingTaken, BoltMoved:
+	case CautionConfirmed, ReadingTaken, BoltMoved, LevelStepped, FiguresRead:
 		if stage == StageIssued || stage == StageSentBack {
 			stage = StageUnderWay
 		}

@@ -42,6 +42,14 @@ const (
 	JobHandedIn      = "job.handed_in"
 	JobSentBack      = "job.sent_back"
 	JobSignedOff     = "job.signed_off"
+
+	LevelStepped          = "level.stepped"
+	PowerControlConfirmed = "power_control.confirmed"
+	PeakFitted            = "peak.fitted"
+	FiguresRead           = "figures.read"
+	SightWasTaken         = "sight.taken"
+	LeanWasRead           = "lean.read"
+	ObstacleWasNoted      = "obstacle.noted"
 )
 
 // HashOf is the hash of an entry: SHA-256 over its bytes as the device wrote them, in hex.

@@ -70,7 +70,7 @@ func readingsByMount(log []db.LogEntry) (map[string][]db.Entry, error) {
 			return nil, err
 		}
 		switch e.Kind {
-		case db.ReadingTaken, db.ReadingWithdrawn, db.BoltMoved:
+		case db.ReadingTaken, db.ReadingWithdrawn, db.BoltMoved, db.PowerControlConfirmed, db.FiguresRead, db.ObstacleWasNoted:
 			entries = append(entries, e)
 		}
 	}

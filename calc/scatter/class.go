@@ -315,3 +315,16 @@ func cutRMS(form Form, sigma, half float64) float64 {
 	e := math.Exp(-u)
 	return sigma * math.Sqrt((1-e*(1+u+u*u/2))/(1-e))
 }
+
+// ScenarioOf is the scenario of a short name: RMa, UMa, UMi or InH; RMa for any other.
+func ScenarioOf(name string) Scenario {
+	switch name {
+	case "UMa":
+		return UrbanMacro
+	case "UMi":
+		return UrbanMicro
+	case "InH":
+		return IndoorOffice
+	}
+	return RuralMacro
+}

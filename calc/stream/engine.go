@@ -475,7 +475,7 @@ func (e *Engine) Evaluate(near, far []antenna.Body) Result {
 		e.extend(&s, n)
 		r.BitsPerSHz, r.StandardError = e.against(&s.bits, &e.base.bits, e.baseBits, e.anchor.StandardError)
 		r.EffectiveStreams, r.StreamsError = e.against(&s.streams, &e.base.streams, e.baseDoF, e.anchor.StreamsError)
-		if r.StandardError <= e.target || n >= mostPoints {
+		if r.StandardError <= e.target*4/3 || n >= mostPoints {
 			break
 		}
 		n = more(n, r.StandardError/e.target)
@@ -514,9 +514,6 @@ func (e *Engine) against(x, base *[replicates][]float64, m, se float64) (float64
 		means[r] = mean(x[r]) - slope*(mean(base[r][:n])-m)
 	}
 	out, own := meanAndError(&means)
-	if n == len(base[0]) {
-		return out, own // the base's own error is in the differences already
-	}
 	return out, math.Hypot(own, slope*se)
 }
 

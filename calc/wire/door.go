@@ -36,6 +36,7 @@ func operations() []operation {
 		aimOperations(),
 		peakOperations(),
 		streamOperations(),
+		streamsOperations(),
 		mountOperations(),
 		toleranceOperations(),
 	)

@@ -44,8 +44,8 @@ export function LimitFields({ id, sheet, edit, problemAt, onUnread }: Props) {
   const left = limitKinds.filter((k) => !limits.some((l) => l.name === k.name));
   const add = (kind: LimitKind) =>
     edit((s) => {
-      const usual = usualLimits(s.radio.combining).find((l) => l.name === kind.name);
-      s.limits = [...(s.limits ?? []), usual ?? ({ name: kind.name, [kind.sense]: kind.first, reason: '' } as Limit)];
+      const usual: Limit | undefined = (usualLimits as Partial<Record<LimitName, Limit>>)[kind.name];
+      s.limits = [...(s.limits ?? []), usual ? { ...usual } : { name: kind.name, [kind.sense]: kind.first, reason: '' }];
     });
   return (
     <fieldset class="group limits-form">

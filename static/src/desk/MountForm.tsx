@@ -111,7 +111,7 @@ export function MountForm({ mount, place, nameMissing, onChange, onFit, onRemove
                             s.radio.combining = combining;
                             // Port-tied, cross-talk is what decides: its limit comes along.
                             const asked = (s.limits ?? []).some((l) => l.name === 'crosstalk_db');
-                            if (!combining && !asked) s.limits = usualLimits(false).slice(0, 1).concat(s.limits ?? []);
+                            if (!combining && !asked) s.limits = [{ ...usualLimits.crosstalk_db }, ...(s.limits ?? [])];
                           })
                         }
                       />

@@ -1,6 +1,6 @@
 // Issuing a job: the visit, then each mount with its sheet. Nothing is sent before every mount can be judged.
 
-import { useEffect, useState } from 'preact/hooks';
+import { useLayoutEffect, useState } from 'preact/hooks';
 import { Button } from '../parts/Button';
 import { Message } from '../parts/Message';
 import { readNumber } from '../parts/number';
@@ -30,7 +30,8 @@ export function PlanPage({ jobs, onIssued }: Props) {
   const [problem, setProblem] = useState<{ field: string; text: string } | null>(null);
   const [issued, setIssued] = useState<JobDraft | null>(null);
 
-  useEffect(() => {
+  // At once, not after the next picture: the tab may be closed right after the last letter.
+  useLayoutEffect(() => {
     if (issued === null) keepDraft(draft);
   }, [draft, issued]);
 

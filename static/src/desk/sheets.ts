@@ -2,7 +2,7 @@
 // form or in the text; the figures of antennas and radio are placeholders of a usual size, to be replaced by those of
 // the data sheet. The defaults of the limits carry their reason.
 
-import type { Antenna, Element, Limit, Pattern, Sheet } from '../types';
+import type { Antenna, Element, Limit, LimitName, Pattern, Sheet } from '../types';
 
 export type Template = 'crossed pair' | 'two omnis apart' | 'two crossed panels';
 
@@ -75,17 +75,47 @@ function mount(template: Template, bearing: number, elevation: number, spacing: 
   }
 }
 
+/** Limits with the reason that each stands for where the job gives none of its own. */
+export const usualLimits = {
+  rate_share: {
+    name: 'rate_share',
+    at_least: 0.9,
+    reason: 'at most a tenth of the planned rate lost to the mounting (usual, change as the job needs)',
+  },
+  envelope_correlation: {
+    name: 'envelope_correlation',
+    at_most: 0.5,
+    reason: 'common practice: up to 0.5 two chains lose little',
+  },
+  pointing_loss_db: {
+    name: 'pointing_loss_db',
+    at_most: 1,
+    reason: 'a usual allowance for mounting; the link budget decides',
+  },
+  crosstalk_db: {
+    name: 'crosstalk_db',
+    at_least: 25,
+    reason: 'usual for a port-tied radio; its data sheet decides',
+  },
+} as const satisfies Partial<Record<LimitName, Limit>>;
+
 /** What a mount is asked by default. A job's own figures replace these. */
-export function usualLimits(combining: boolean): Limit[] {
-  const limits: Limit[] = [
-    { name: 'rate_share', at_least: 0.9, reason: 'at most a tenth of the planned rate lost to the mounting (usual, change as the job needs)' },
-    { name: 'envelope_correlation', at_most: 0.5, reason: 'common practice: up to 0.5 two chains lose little' },
-    { name: 'pointing_loss_db', at_most: 1, reason: 'a usual allowance for mounting; the link budget decides' },
-  ];
-  if (!combining) {
-    limits.unshift({ name: 'crosstalk_db', at_least: 25, reason: 'usual for a port-tied radio; its data sheet decides' });
+function limitsOf(template: Template): Limit[] {
+  const { rate_share, envelope_correlation, pointing_loss_db, crosstalk_db } = usualLimits;
+  const streams = (least: number, ports: string): Limit => ({
+    name: 'effective_streams',
+    at_least: least,
+    reason: `the ${ports} ports are to carry streams of their own (usual, change as the job needs)`,
+  });
+  switch (template) {
+    case 'crossed pair':
+      // One place, two polarizations: no correlation to ask for.
+      return [{ ...crosstalk_db }, streams(1.7, 'two'), { ...rate_share }, { ...pointing_loss_db }];
+    case 'two omnis apart':
+      return [streams(1.5, 'two'), { ...rate_share }, { ...envelope_correlation }, { ...pointing_loss_db }];
+    case 'two crossed panels':
+      return [streams(3.2, 'four'), { ...rate_share }, { ...envelope_correlation }, { ...pointing_loss_db }];
   }
-  return limits;
 }
 
 export function sheetFrom(template: Template): Sheet {
@@ -122,7 +152,7 @@ export function sheetFrom(template: Template): Sheet {
       },
     },
     radio_figures: null,
-    limits: usualLimits(combining),
+    limits: limitsOf(template),
   };
 }
 

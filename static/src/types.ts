@@ -130,15 +130,81 @@ export interface Limit {
   reason?: string | null;
 }
 
+/** A surveyed point; the height is above the path's height datum. */
+export interface Place {
+  lat_deg: number;
+  lon_deg: number;
+  height_m: number;
+  /** Standard uncertainty in each of east and north. */
+  u_m?: number | null;
+}
+
+export interface Landmark extends Place {
+  name: string;
+}
+
+export interface Obstacle {
+  name?: string | null;
+  /** From the near end, along the ground. */
+  at_m: number;
+  top_m: number;
+  u_m?: number | null;
+}
+
+export interface Path {
+  bearing_deg: number;
+  elevation_deg: number;
+  distance_m: number;
+  near_at?: Place | null;
+  far_at?: Place | null;
+  height_datum?: string | null;
+  k_factor?: number | null;
+  above_ground_m?: number | null;
+  obstacles?: Obstacle[] | null;
+}
+
+/** One port's line on a radio's own page. */
+export interface ChainFigures {
+  port: string;
+  heard?: boolean;
+  level_dbm?: number | null;
+  noise_dbm?: number | null;
+  snr_db?: number | null;
+  xpi_db?: number | null;
+  swing_db?: number | null;
+  return_loss_db?: number | null;
+}
+
+/** What one radio's own page shows. */
+export interface RadioPage {
+  ports: ChainFigures[];
+  streams?: number | null;
+  modulation_bits?: number | null;
+  modulation_max_bits?: number | null;
+  peer_as_planned?: boolean | null;
+  frequency_mhz?: number | null;
+  bandwidth_mhz?: number | null;
+  tx_power_dbm?: number | null;
+}
+
+export interface RadioFigures {
+  power_control_off?: boolean | null;
+  expected_level_dbm?: number | null;
+  expected_u_db?: number | null;
+  near?: RadioPage | null;
+  far?: RadioPage | null;
+}
+
 export interface Sheet {
   sheet: 1;
   title: string;
   radio: Radio;
   near: { antennas: Antenna[] };
   far: { antennas: Antenna[] };
-  path: { bearing_deg: number; elevation_deg: number; distance_m: number };
+  path: Path;
   surroundings: Surroundings;
-  radio_figures?: unknown;
+  landmarks?: Landmark[] | null;
+  radio_figures?: RadioFigures | null;
   limits: Limit[];
 }
 
@@ -287,6 +353,21 @@ export interface Bodies {
   };
   'job.sent_back': { remark: string; base_seq: number };
   'job.signed_off': { remark: string | null; base_seq: number };
+  'level.stepped': { antenna: string; axis: 'azimuth' | 'tilt'; search: number; angle_deg: number; level_dbm: number; typed: string };
+  'power_control.confirmed': { name: string };
+  'peak.fitted': { antenna: string; axis: 'azimuth' | 'tilt'; search: number; answer: Record<string, unknown> };
+  'figures.read': { end: 'near' | 'far'; page: RadioPage; typed: Record<string, string> };
+  'sight.taken': {
+    antenna: string;
+    phase: Phase;
+    reference: 'sun' | 'landmark' | 'compass';
+    landmark: string | null;
+    asked: Record<string, unknown>;
+    answer: Record<string, unknown>;
+    typed: string;
+  };
+  'lean.read': { asked: Record<string, unknown>; answer: Record<string, unknown>; typed: string };
+  'obstacle.noted': Obstacle;
 }
 
 export type Kind = keyof Bodies;

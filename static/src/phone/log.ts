@@ -13,11 +13,20 @@ export function saidOf<K extends Kind>(log: readonly LoggedEntry[], kind: K): Sa
     .map((logged) => ({ entry: logged.entry as EntryOf<K>, logged }));
 }
 
+const folded: ReadonlySet<Kind> = new Set<Kind>([
+  'reading.taken',
+  'reading.withdrawn',
+  'bolt.moved',
+  'figures.read',
+  'power_control.confirmed',
+  'obstacle.noted',
+]);
+
 /** What mount.fold takes of the log of one mount. */
 export function forFold(log: readonly LoggedEntry[], mount: string) {
   return log
     .filter(({ entry, whereabouts }) => entry.mount === mount && whereabouts !== 'needs person')
-    .filter(({ entry }) => entry.kind === 'reading.taken' || entry.kind === 'reading.withdrawn' || entry.kind === 'bolt.moved')
+    .filter(({ entry }) => folded.has(entry.kind))
     .map(({ entry }) => ({ id: entry.id, kind: entry.kind, mount: entry.mount, body: entry.body }));
 }
 

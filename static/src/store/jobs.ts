@@ -51,7 +51,7 @@ export function stageAfter(stage: Stage, kinds: readonly Kind[]): Stage {
   return stage;
 }
 
-const work: ReadonlySet<Kind> = new Set<Kind>(['caution.confirmed', 'reading.taken']);
+const work: ReadonlySet<Kind> = new Set<Kind>(['caution.confirmed', 'reading.taken', 'bolt.moved', 'level.stepped', 'figures.read']);
 
 function byVisit(a: PhoneJob, b: PhoneJob): number {
   const day = (job: PhoneJob) => job.summary.visit_on ?? '9999';

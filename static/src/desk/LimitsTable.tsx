@@ -90,6 +90,19 @@ function Reason({ sheet, name }: { sheet: Sheet; name: LimitName }) {
   return <span class="limit-reason">{reason || t('desk.limits.no-reason')}</span>;
 }
 
+/** Digits that say nothing, as in 0.000, are left out. */
+function valueOf(name: LimitName, value: number, u: number | null | undefined): string {
+  const text = limitValue(name, value, u);
+  return /[1-9]/.test(text) ? text : limitValue(name, 0);
+}
+
+/** A doubt too small for the figures shown is said to be below the last of them. */
+function doubtOf(name: LimitName, u: number): string {
+  const text = limitValue(name, u, u);
+  if (u === 0 || /[1-9]/.test(text)) return `±\u00a0${text}`;
+  return `<\u00a0${text.replace(/0(?=\D*$)/, '1')}`;
+}
+
 function NotJudged({ why }: { why: string }) {
   return (
     <td colSpan={6} class="aside">
@@ -105,7 +118,7 @@ function Judged({ limit, found, left }: { limit: LimitOutcome; found: LimitOutco
       <Outcome label={t('desk.state.as_found')} name={limit.name} outcome={found} />
       <Outcome label={t('desk.state.as_left')} name={limit.name} outcome={left} />
       <td class="number" data-label={t('desk.limits.doubt')}>
-        {limit.u === null ? '' : `±\u00a0${limitValue(limit.name, limit.u, limit.u)}`}
+        {limit.u === null ? '' : doubtOf(limit.name, limit.u)}
       </td>
       <td class="line" data-label={t('desk.limits.line')}>
         <LimitLine outcome={limit} bare />
@@ -134,7 +147,7 @@ function Value({ label, name, value, u, limit }: ValueProps) {
     (limit.sense === 'at least' ? value < limit.limit : value > limit.limit);
   return (
     <td class="number" data-label={label} data-missed={missed}>
-      {value === null ? t('desk.limits.nothing') : limitValue(name, value, u)}
+      {value === null ? t('desk.limits.nothing') : valueOf(name, value, u)}
       {missed && <span class="missed">{t('desk.limits.missed')}</span>}
     </td>
   );

@@ -14,7 +14,7 @@ func (s *Server) health(c *fiber.Ctx) error {
 	ctx, done := s.patience()
 	defer done()
 	if err := s.cfg.Store.Ping(ctx); err != nil {
-		return err
+		return &problem{Status: http.StatusServiceUnavailable, Code: "unhealthy", Detail: "the log cannot be written; the server's own log says why", Cause: err}
 	}
 	c.Set(fiber.HeaderCacheControl, "no-store")
 	return answer(c, http.StatusOK, map[string]any{"status": "ok", "demo": s.cfg.Demo})

@@ -22,9 +22,16 @@ type problem struct {
 	Field      string
 	Detail     string
 	RetryAfter time.Duration
+	// Cause is for the log alone.
+	Cause error
 }
 
-func (p *problem) Error() string { return p.Code + ": " + p.Detail }
+func (p *problem) Error() string {
+	if p.Cause != nil {
+		return p.Code + ": " + p.Cause.Error()
+	}
+	return p.Code + ": " + p.Detail
+}
 
 func refused(status int, code, detail string) *problem {
 	return &problem{Status: status, Code: code, Detail: detail}

@@ -15,7 +15,6 @@ func (s *Server) routes() {
 	api.Delete("/session", s.anybody(s.signOut))
 
 	api.Get("/calc", s.anybody(s.listOperations))
-	//	api.Get("/calc/:op/schema", s.anybody(s.showSchema))
 	api.Post("/calc/:op", s.anybody(s.calculate))
 
 	api.Post("/entries", s.anybody(s.takeEntries))
@@ -30,7 +29,7 @@ func (s *Server) routes() {
 	api.Get("/quarantine", s.supervisor(s.listQuarantine))
 	api.Get("/people", s.supervisor(s.listPeople))
 	api.Post("/people/invitations", s.supervisor(s.invite))
-	//	api.Get("/openapi.json", s.anybody(s.showOpenAPI))
+	api.Get("/openapi.json", s.anybody(s.showOpenAPI))
 
 	s.app.Get("/", s.page)
 	s.app.Get("/desk", s.page)

@@ -56,6 +56,7 @@ type Server struct {
 	stop    context.CancelFunc
 	hashing chan struct{}
 	dummy   string
+	openAPI []byte
 	judge   judge
 }
 
@@ -87,6 +88,9 @@ func New(cfg Config) (*Server, error) {
 	s.root, s.stop = context.WithCancel(context.Background())
 	var err error
 	if s.dummy, err = cfg.Passphrases.dummy(); err != nil {
+		return nil, err
+	}
+	if s.openAPI, err = describe(openAPI); err != nil {
 		return nil, err
 	}
 	s.app = fiber.New(fiber.Config{

@@ -53,8 +53,6 @@ export function MountDrawing(props: MountDrawingProps) {
         aria-label={describe(antennas)}
       >
         <Structure antennas={antennas} layout={layout} paper={paper} />
-        {ghost &&
-          antennas.filter(differs).map((antenna) => <Ghost key={`ghost-${antenna.id}`} antenna={antenna} paper={paper} />)}
         {antennas.map((antenna) => (
           <Drawn
             key={antenna.id}
@@ -65,6 +63,8 @@ export function MountDrawing(props: MountDrawingProps) {
             room={labelRoom(antenna, antennas, layout, paper)}
           />
         ))}
+        {ghost &&
+          antennas.filter(differs).map((antenna) => <Ghost key={`ghost-${antenna.id}`} antenna={antenna} paper={paper} />)}
         {dimensions && (
           <Dimensions antennas={antennas} spacings={props.spacings ?? []} layout={layout} paper={paper} callout={callout} compact={compact ?? false} />
         )}
@@ -106,7 +106,7 @@ function marginsFor(antennas: DrawnAntenna[], layout: Layout, dimensions: boolea
   const letters = antennas.some((a) => a.shape === 'omni' || a.shape === 'point') ? 28 : 8;
   const labels = line + 6;
   const figures = across ? 2 * line + 22 : 0;
-  const over = callout === 'over' ? 50 : 0;
+  const over = callout === 'over' ? 58 : 0;
   const under = callout === 'under' ? 56 : 0;
   const swapped = callout === 'under' ? figures : 0;
   const room = callout === 'over' && layout !== 'one' ? 40 : 18;
@@ -190,7 +190,7 @@ function strokeHalf(antenna: DrawnAntenna, scale: number): number {
   const h = antenna.height_mm * scale;
   if (antenna.shape === 'omni') return Math.max(14, h * 0.3);
   const count = Math.max(1, new Set(antenna.strokes.map((s) => `${s.right_mm} ${s.up_mm}`)).size);
-  return Math.min(46, Math.max(9, (Math.min(w, h / count) / 2) * 0.62));
+  return Math.min(62, Math.max(9, (Math.min(w, h / count) / 2) * 0.54));
 }
 
 function Drawn(props: { antenna: DrawnAntenna; paper: Paper; selected: boolean; compact: boolean; room: number }) {
@@ -202,7 +202,8 @@ function Drawn(props: { antenna: DrawnAntenna; paper: Paper; selected: boolean; 
   const off = antenna.off.length > 0;
   const half = strokeHalf(antenna, scale);
   const classes = `antenna${read ? '' : ' unread'}${off ? ' off' : ''}${selected ? ' selected' : ''}`;
-  const skew = read ? `${shortest(antenna.placed.skew_deg, 1)}°` : '';
+  // The drawing shows which way; the figure says how much.
+  const skew = read ? `${shortest(Math.abs(antenna.placed.skew_deg), 1)}°` : '';
   const letter = compact ? 16 : 22;
   const round = antenna.shape === 'dish' || antenna.shape === 'point';
   const inside = antenna.shape !== 'omni' && w >= 34 && h / 2 - half >= letter + 10;
@@ -243,7 +244,7 @@ function Ghost({ antenna, paper }: { antenna: DrawnAntenna; paper: Paper }) {
   return (
     <g class="ghost" style={place(paper, antenna.planned)}>
       <Outline antenna={antenna} scale={paper.scale} />
-      <Strokes antenna={antenna} scale={paper.scale} half={strokeHalf(antenna, paper.scale)} />
+      {antenna.shape !== 'omni' && <Strokes antenna={antenna} scale={paper.scale} half={strokeHalf(antenna, paper.scale)} />}
     </g>
   );
 }
@@ -409,7 +410,7 @@ function millimetres(spacing: DrawnSpacing): string {
 }
 
 function waves(spacing: DrawnSpacing): string {
-  return `${shortest(spacing.wavelengths, spacing.wavelengths < 10 ? 2 : 1)} \u03bb`;
+  return `${figure(spacing.wavelengths, spacing.wavelengths < 10 ? 2 : 1)} \u03bb`;
 }
 
 function turnedHeight(antenna: DrawnAntenna): number {
@@ -470,7 +471,7 @@ function Turn(props: { remedy: Remedy; callout: Callout; antennas: DrawnAntenna[
   return (
     <g aria-hidden="true">
       <TurnSign remedy={remedy} x={cx} y={y} under={under} />
-      <text class="over off" x={tx} y={under ? y + 26 : Math.max(size * 0.6, y - 26)} text-anchor="middle" dominant-baseline="central">
+      <text class="over off" x={tx} y={under ? y + 26 : Math.max(size * 0.6, y - (remedy.quantity === 'tilt' ? 36 : 26))} text-anchor="middle" dominant-baseline="central">
         {text}
       </text>
     </g>
@@ -486,7 +487,7 @@ function TurnSign({ remedy, x, y, under }: { remedy: Remedy; x: number; y: numbe
     case 'azimuth':
       return <Swing cx={x} y={y} sign={sign} />;
     case 'tilt':
-      return <Straight x={x} y={y} dx={0} dy={-sign} />;
+      return <Straight x={x} y={under ? y : y - 6} dx={0} dy={-sign} />;
     case 'position':
       return <Straight x={x} y={y} {...heading(remedy)} />;
   }

@@ -164,5 +164,7 @@ export function drawnFrom(sheet: Sheet, verdict: Verdict | null, state: State): 
 /** The one remedy that is drawn: the best, while the mount is not yet right. */
 export function drawnRemedy(verdict: Verdict | null, state: State): Remedy | null {
   if (!verdict || verdict.judged !== state || verdict.word === 'go') return null;
-  return verdict.remedies[0] ?? null;
+  const best = verdict.remedies[0];
+  // A turn that leaves "measure again" as it is would only send a climber round in circles.
+  return best && (verdict.word === 'no-go' || best.word_after === 'go') ? best : null;
 }

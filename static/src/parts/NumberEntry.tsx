@@ -19,6 +19,8 @@ export interface NumberEntryProps {
   /** "decimal" brings up the phone's own keys; "none" where the page's own keypad is on the screen. */
   keys?: 'decimal' | 'none';
   onFocus?: () => void;
+  /** The enter key of a keyboard. */
+  onEnter?: () => void;
   /** The page's own keys write into this field. */
   inUse?: boolean;
   inputRef?: Ref<HTMLInputElement>;
@@ -50,8 +52,11 @@ export function NumberEntry(props: NumberEntryProps) {
           aria-describedby={described || undefined}
           onInput={(event) => props.onText(event.currentTarget.value)}
           onFocus={props.onFocus}
+          onKeyDown={(event) => {
+            if (event.key === 'Enter') props.onEnter?.();
+          }}
         />
-        <span class="unit" aria-hidden="true">
+        <span class={`unit${props.unit === '°' ? ' raised' : ''}`} aria-hidden="true">
           {props.unit}
         </span>
       </div>

@@ -1,6 +1,7 @@
 // Own entries that the server set apart, with its reason, in its words: a supervisor sees the same.
 import { Button } from '../parts/Button';
 import { needingPerson, sendAgain, useStored } from '../store';
+import type { Entry } from '../types';
 import { when } from '../words/when';
 import { t } from '../words/words';
 import { Page } from './Page';
@@ -14,7 +15,7 @@ export function Apart() {
         {list?.map(({ entry, reason }) => (
           <li class="section stack" key={entry.id}>
             <p>
-              <strong>{entry.kind}</strong>, {when(entry.at)}
+              <strong>{what(entry)}</strong>, {when(entry.at)}
             </p>
             <p>{t('apart.reason', { reason: reason ?? '' })}</p>
             <Button onPress={() => void sendAgain(entry.id)}>{t('apart.again')}</Button>
@@ -23,4 +24,22 @@ export function Apart() {
       </ul>
     </Page>
   );
+}
+
+/** What the entry was, in words. */
+function what(entry: Entry): string {
+  switch (entry.kind) {
+    case 'reading.taken':
+      return `${t('kind.reading.taken')}: ${entry.body.antenna} ${t(`quantity.${entry.body.quantity}`)} ${entry.body.typed}`;
+    case 'bolt.moved':
+      return `${t('kind.bolt.moved')}: ${entry.body.antenna} ${t(`quantity.${entry.body.quantity}`)}`;
+    case 'note.added':
+      return `${t('kind.note.added')}: ${entry.body.text}`;
+    case 'caution.confirmed':
+    case 'reading.withdrawn':
+    case 'job.handed_in':
+      return t(`kind.${entry.kind}`);
+    default:
+      return t('kind.other');
+  }
 }

@@ -4,30 +4,23 @@ import { Button } from '../parts/Button';
 import { Message } from '../parts/Message';
 import { WordMark } from '../parts/WordMark';
 import { addEntry, dropDraft, getDraft, setDraft } from '../store';
-import type { LoggedEntry, PhoneJob, PlannedMount, Sheet, Verdict } from '../types';
+import type { LoggedEntry, PhoneJob } from '../types';
 import { when } from '../words/when';
 import { t } from '../words/words';
 import { DeskRemark } from './DeskRemark';
 import { Gone } from './Gone';
-import { judge } from './judge';
 import { saidOf } from './log';
 import { Page } from './Page';
 import { hrefOf } from './route';
 import { reasonOf } from './sentence';
 import { useJob } from './useJob';
 import { turnedUnread, unconfirmed, unread, wantedOf } from './steps';
+import { type MountVerdict, useWholeVerdicts } from './whole';
 import { Visit } from './Visit';
-
-interface MountVerdict {
-  mount: PlannedMount;
-  sheet: Sheet | null;
-  verdict: Verdict | null;
-  why: string | null;
-}
 
 export function HandIn({ id }: { id: string }) {
   const open = useJob(id);
-  const [verdicts, setVerdicts] = useState<MountVerdict[] | null>(null);
+  const verdicts = useWholeVerdicts(open);
   const [remark, setRemark] = useState('');
   const [busy, setBusy] = useState(false);
   const [trouble, setTrouble] = useState<string | null>(null);
@@ -35,20 +28,6 @@ export function HandIn({ id }: { id: string }) {
   useEffect(() => {
     getDraft<string>(draftKey).then((kept) => kept && setRemark((now) => now || kept), () => undefined);
   }, [draftKey]);
-  useEffect(() => {
-    if (!open) return;
-    let live = true;
-    const asked = open.job.plan.mounts.map((mount) =>
-      judge(mount, open.log, null).then(
-        ({ sheet, verdict }): MountVerdict => ({ mount, sheet, verdict, why: null }),
-        (error: unknown): MountVerdict => ({ mount, sheet: null, verdict: null, why: error instanceof Error ? error.message : String(error) }),
-      ),
-    );
-    void Promise.all(asked).then((all) => live && setVerdicts(all));
-    return () => {
-      live = false;
-    };
-  }, [open]);
   if (!open) return <Gone looking={open === undefined} />;
   const { job, log } = open;
   const things = openThings(job, log, verdicts ?? []);

@@ -15,17 +15,20 @@ import { Page } from './Page';
 import { hrefOf } from './route';
 import { useJob } from './useJob';
 import { nextStep, unread } from './steps';
+import { titleBeside } from './titles';
 import { Visit } from './Visit';
+import { useWholeVerdicts } from './whole';
 
 export function JobPage({ id }: { id: string }) {
   const open = useJob(id);
+  const verdicts = useWholeVerdicts(open);
   if (!open) return <Gone looking={open === undefined} />;
   const { job, log } = open;
   const { plan } = job;
   return (
     <Page
       title={plan.site}
-      under={`${plan.title}, ${t(`stage.${job.stage}`)}`}
+      under={`${titleBeside(plan)}, ${t(`stage.${job.stage}`)}`}
       backHref="#/"
       head={<Visit job={job} log={log} mount={null} here={null} />}
     >
@@ -36,7 +39,8 @@ export function JobPage({ id }: { id: string }) {
           {plan.mounts.map((mount) => {
             const step = nextStep(log, mount);
             const phase = step === 'as-found' ? 'as_found' : 'as_left';
-            const word = job.summary.words[mount.id];
+            const verdict = verdicts?.find((v) => v.mount.id === mount.id)?.verdict ?? null;
+            const word = verdict && verdict.judged !== 'planned' ? verdict.word : null;
             return (
               <li key={mount.id}>
                 <a class="card" href={hrefOf({ page: 'mount', job: id, mount: mount.id, step })}>
@@ -77,7 +81,12 @@ function Emergency({ job }: { job: PhoneJob }) {
       <p class="large as-typed">{emergency ?? t('job.no-emergency')}</p>
       <h3>{t('job.coordinates')}</h3>
       <p class="large figure">
-        {lat_deg === null || lon_deg === null ? t('job.no-coordinates') : `${figure(lat_deg, 5)}° ${figure(lon_deg, 5)}°`}
+        {lat_deg === null || lon_deg === null ? t('job.no-coordinates') : t('job.coordinates-value', {
+              lat: figure(Math.abs(lat_deg), 5),
+              north: t(lat_deg < 0 ? 'south' : 'north'),
+              lon: figure(Math.abs(lon_deg), 5),
+              east: t(lon_deg < 0 ? 'west' : 'east'),
+            })}
       </p>
     </section>
   );

@@ -10,6 +10,7 @@ import type { PhoneJob } from '../types';
 import { day, today, when } from '../words/when';
 import { t } from '../words/words';
 import { Page } from './Page';
+import { titleBeside } from './titles';
 import { hrefOf } from './route';
 import { currentTheme, keepTheme, type Theme, themes } from './theme';
 
@@ -44,7 +45,7 @@ export function Jobs() {
         </div>
       )}
       <ul class="jobs-list">
-        {list?.map((job) => (
+        {list && [...list].sort(byWork).map((job) => (
           <li key={job.summary.id}>
             <JobCard job={job} />
           </li>
@@ -85,6 +86,12 @@ export function Jobs() {
   );
 }
 
+/** What a crew has to do comes first: sent back, then by day what is open, then what is at the desk, then what is signed. */
+function byWork(a: PhoneJob, b: PhoneJob): number {
+  const rank = ({ stage }: PhoneJob) => ({ 'sent back': 0, 'under way': 1, issued: 1, drafted: 2, 'handed in': 3, 'signed off': 4 })[stage];
+  return rank(a) - rank(b) || (a.summary.visit_on ?? '9999').localeCompare(b.summary.visit_on ?? '9999');
+}
+
 function JobCard({ job }: { job: PhoneJob }) {
   const { summary, plan, stage, waiting } = job;
   const date = summary.visit_on;
@@ -95,12 +102,12 @@ function JobCard({ job }: { job: PhoneJob }) {
         <strong class="card-title">{summary.site}</strong>
         <span class="stage">{t(`stage.${stage}`)}</span>
       </span>
-      <span class="quiet">
-        {summary.title} {'\u00b7'} {visit}
-      </span>
+      <span>{titleBeside(summary)}</span>
+      <span class="quiet">{visit}</span>
       <span class="card-mounts">
         {plan.mounts.map((mount) => {
-          const word = summary.words[mount.id];
+          // The server's word; with entries waiting here it may be an old one, and the job's own page works it out anew.
+          const word = waiting > 0 ? undefined : summary.words[mount.id];
           return (
             <span class="card-mount" key={mount.id}>
               <span>{mount.name}</span>

@@ -1,6 +1,6 @@
 // One mount at one step of the visit: the drawing that readings are entered through, the readings as a list, the verdict
 // and the next thing to do in thumb's reach.
-import { useState } from 'preact/hooks';
+import { useEffect, useState } from 'preact/hooks';
 import { drawnFrom, drawnRemedy, type DrawnAntenna, quantitiesOf, statesOf } from '../draw/drawn';
 import { MountDrawing } from '../draw/MountDrawing';
 import { Button } from '../parts/Button';
@@ -13,7 +13,7 @@ import { Gone } from './Gone';
 import { useJudged } from './judge';
 import { lastTurn, standing } from './log';
 import { axes, type Axis, directedOf, saidReading, wayName } from './manner';
-import { type Action, nextAction } from './nextAction';
+import { type Action, nextActions } from './nextAction';
 import { type Notice, takeNotice } from './notice';
 import { Page } from './Page';
 import { go, hrefOf, type MountStep, phaseOf } from './route';
@@ -27,6 +27,7 @@ export function Mount({ job: id, mount: mountId, step }: { job: string; mount: s
   const open = useJob(id);
   const mount = open?.job.plan.mounts.find((m) => m.id === mountId);
   const { verdict, sheet, problem, thinking } = useJudged(mount, open?.log, step);
+  const most = useDrawingHeight();
   const [notice, setNotice] = useState<Notice | null>(takeNotice);
   if (!open || !mount) return <Gone looking={open === undefined} />;
   const { job, log } = open;
@@ -34,7 +35,8 @@ export function Mount({ job: id, mount: mountId, step }: { job: string; mount: s
   const shown = sheet ?? mount.sheet;
   const state = verdict && verdict.judged === phase ? phase : 'planned';
   const antennas = drawnFrom(shown, verdict, state);
-  const action = nextAction(step, log, mount, state === phase ? verdict : null);
+  const actions = nextActions(step, log, mount, state === phase ? verdict : null);
+  const action = actions[0] ?? null;
   const remedy = action?.do === 'measure' && !action.again ? null : drawnRemedy(verdict, state);
   const spacings = state === 'planned' && verdict?.judged !== 'planned' ? [] : (verdict?.geometry.spacings ?? []);
   const measure = (antenna: string, quantity: Quantity) => go({ page: 'reading', job: id, mount: mountId, step, antenna, quantity });
@@ -73,11 +75,14 @@ export function Mount({ job: id, mount: mountId, step }: { job: string; mount: s
             thinking={thinking}
             phase={phase}
             href={hrefOf({ page: 'verdict', job: id, mount: mountId, step })}
+            begin={action?.do === 'measure' ? action : null}
           />
-          {action && (
-            <div class="actions">
+          <div class="actions">
+            {actions.map((one, i) => (
               <ActionButton
-                action={action}
+                key={JSON.stringify(one)}
+                action={one}
+                first={i === 0}
                 job={id}
                 mount={mountId}
                 step={step}
@@ -85,13 +90,13 @@ export function Mount({ job: id, mount: mountId, step }: { job: string; mount: s
                   setNotice({ text: t('mount.turned-kept', { antenna, quantity: t(`quantity.${quantity}`) }), entry: null, takenBack: '' })
                 }
               />
-            </div>
-          )}
+            ))}
+          </div>
         </>
       }
     >
       <DeskRemark job={job} />
-      <MountDrawing antennas={antennas} spacings={spacings} remedy={remedy} ghost onTouch={measure} />
+      <MountDrawing antennas={antennas} spacings={spacings} remedy={remedy} ghost onTouch={measure} most={most} />
       <section class="section" aria-labelledby="readings-title">
         <h2 id="readings-title">{t('mount.readings', { phase: t(`phase.${phase}`) })}</h2>
         <p class="quiet">{t(`mount.step-${step}`)}</p>
@@ -120,22 +125,44 @@ export function Mount({ job: id, mount: mountId, step }: { job: string; mount: s
   );
 }
 
-function ActionButton(props: { action: Action; job: string; mount: string; step: MountStep; onTurned: (antenna: string, quantity: Quantity) => void }) {
-  const { action, job, mount, step } = props;
+/** The drawing takes what the head and the dock leave of the screen, so that it is seen whole with its verdict. */
+function useDrawingHeight(): number {
+  const fit = () => Math.min(400, Math.max(230, innerHeight - 430));
+  const [height, setHeight] = useState(fit);
+  useEffect(() => {
+    const follow = () => setHeight(fit());
+    addEventListener('resize', follow);
+    return () => removeEventListener('resize', follow);
+  }, []);
+  return height;
+}
+
+function ActionButton(props: {
+  action: Action;
+  first: boolean;
+  job: string;
+  mount: string;
+  step: MountStep;
+  onTurned: (antenna: string, quantity: Quantity) => void;
+}) {
+  const { action, first, job, mount, step } = props;
+  const kind = first ? 'first' : 'plain';
   switch (action.do) {
     case 'measure': {
       const named = { antenna: action.antenna, quantity: t(`quantity.${action.quantity}`) };
       return (
-        <Button kind="first" wide href={hrefOf({ page: 'reading', job, mount, step, antenna: action.antenna, quantity: action.quantity })}>
+        <Button kind={kind} extra="grow" href={hrefOf({ page: 'reading', job, mount, step, antenna: action.antenna, quantity: action.quantity })}>
           {t(action.again ? 'mount.measure-again' : 'mount.measure', named)}
         </Button>
       );
     }
-    case 'turned':
-      return <TurnedBolt key={`${action.antenna} ${action.quantity}`} first job={job} mount={mount} antenna={action.antenna} quantity={action.quantity} onTurned={() => props.onTurned(action.antenna, action.quantity)} />;
+    case 'turned': {
+      const { antenna, quantity } = action;
+      return <TurnedBolt first={first} job={job} mount={mount} antenna={antenna} quantity={quantity} onTurned={() => props.onTurned(antenna, quantity)} />;
+    }
     case 'go':
       return (
-        <Button kind="first" wide href={action.to === 'hand-in' ? hrefOf({ page: 'hand-in', job }) : hrefOf({ page: 'mount', job, mount, step: action.to })}>
+        <Button kind={kind} extra="grow" href={action.to === 'hand-in' ? hrefOf({ page: 'hand-in', job }) : hrefOf({ page: 'mount', job, mount, step: action.to })}>
           {action.to === 'hand-in' ? t('mount.to-hand-in') : action.to === 'adjust' ? t('mount.to-adjust') : t('mount.to-as-left')}
         </Button>
       );
@@ -181,6 +208,7 @@ function Schedule(props: ScheduleProps) {
                   <span class="quiet figure">
                     {states?.planned ? t('mount.planned', { value: saidReading(quantity, antenna, states.planned) }) : ''}
                   </span>
+                  {value && own === 0 && phase === 'as_left' && <span class="quiet">{t('mount.from-found')}</span>}
                 </span>
                 <span class="value">
                   {value ? (
@@ -188,7 +216,6 @@ function Schedule(props: ScheduleProps) {
                       <span class="big figure">{value.number}</span>
                       <span class="beside figure">
                         {value.way} {value.u}
-                        {own === 0 && phase === 'as_left' ? ` \u00b7 ${t('phase.as_found')}` : ''}
                       </span>
                     </>
                   ) : (
@@ -222,7 +249,7 @@ function valueOf(quantity: Quantity, antenna: Antenna, drawn: DrawnAntenna | und
     const axis = [...axes].sort((a, b) => Math.abs(along(drawn.planned, b)) - Math.abs(along(drawn.planned, a)))[0] ?? 'right';
     const mm = along(drawn.placed, axis);
     const u = doubts[`u_${axis}_mm`];
-    return { number: `${shortest(Math.abs(mm), 0)} mm`, way: wayName(axis, mm < 0 ? 'less' : 'more'), u: u ? `\u00b1 ${figure(u, decimalsFor(u))}` : '' };
+    return { number: `${shortest(Math.abs(mm), 0)} mm`, way: wayName(axis, mm < 0 ? 'less' : 'more'), u: u ? `\u00b1 ${figure(u, decimalsFor(u))} mm` : '' };
   }
   const value = quantity === 'skew' ? drawn.placed.skew_deg : quantity === 'tilt' ? drawn.placed.tilt_deg : drawn.placed.azimuth_deg;
   const u = quantity === 'skew' ? doubts.u_skew_deg : quantity === 'tilt' ? doubts.u_tilt_deg : doubts.u_azimuth_deg;

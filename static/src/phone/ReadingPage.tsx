@@ -107,6 +107,7 @@ function Entering(props: EnteringProps) {
     else setField(inUse, { text: apply((draft.fields[inUse] ?? blank).text) });
   };
   const keep = async () => {
+    if (busy) return;
     const now = check(quantity, draft, datum, true);
     if (!now.reading) {
       setAsked(true);
@@ -189,6 +190,7 @@ function Entering(props: EnteringProps) {
                 error={checked.errors[name] ?? null}
                 onText={(text) => setField(name, { text })}
                 onFocus={() => setInUse(name)}
+                onEnter={() => void keep()}
               />
               {name === main && (
                 <NumberEntry
@@ -203,6 +205,7 @@ function Entering(props: EnteringProps) {
                   error={checked.errors.u ?? null}
                   onText={(u) => change({ ...draft, u })}
                   onFocus={() => setInUse('u')}
+                  onEnter={() => void keep()}
                 />
               )}
             </div>
@@ -243,6 +246,7 @@ function Entering(props: EnteringProps) {
         onChoose={setMethod}
       />
       <p class="quiet">{t('reading.usual', { u: usualDoubt(quantity, draft.method) })}</p>
+      {quantity === 'position' && <p>{t('reading.middles')}</p>}
       {quantity === 'azimuth' && <p>{t('reading.north')}</p>}
       {body.level_datum && (quantity === 'skew' || quantity === 'tilt') && <p>{t('reading.datum-flat', { surface: body.level_datum.surface, antenna: body.id })}</p>}
       {quantity === 'position' && !draft.more && (

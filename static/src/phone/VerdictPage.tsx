@@ -5,6 +5,7 @@ import { limitTitle } from '../draw/limit';
 import { Square, toneOf } from '../draw/Square';
 import { turnSentence } from '../draw/turn';
 import { Message } from '../parts/Message';
+import type { LimitName, Sheet } from '../types';
 import { percent } from '../words/figures';
 import { t } from '../words/words';
 import { Gone } from './Gone';
@@ -94,7 +95,8 @@ export function VerdictPage({ job: id, mount: mountId, step }: { job: string; mo
             <div key={name}>
               <dt>{limitTitle(name)}</dt>
               <dd>
-                {t(`means.${name}`)} {reasonOfLimit(sheet, name)}
+                {t(`means.${name}`)}
+                {reasonOfLimit(sheet, name)}
               </dd>
             </div>
           ))}
@@ -121,6 +123,7 @@ export function VerdictPage({ job: id, mount: mountId, step }: { job: string; mo
 }
 
 /** Why this job has this limit, in the planner's words. */
-function reasonOfLimit(sheet: { limits: { name: string; reason?: string | null }[] }, name: string): string {
-  return sheet.limits.find((limit) => limit.name === name)?.reason ?? '';
+function reasonOfLimit(sheet: Sheet, name: LimitName) {
+  const reason = sheet.limits.find((limit) => limit.name === name)?.reason;
+  return reason ? <p class="quiet">{t('verdict.why-limit', { reason: reason.replace(/\.$/, '') })}</p> : null;
 }

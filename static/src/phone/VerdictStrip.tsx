@@ -3,9 +3,9 @@
 import type { CalcProblem } from '../calc/client';
 import { limitDoubted, limitValue } from '../draw/limit';
 import { Square, toneOf } from '../draw/Square';
-import type { Phase, Sheet, Verdict } from '../types';
+import type { Phase, Quantity, Sheet, Verdict } from '../types';
 import { t } from '../words/words';
-import { headlineOf, reasonOf, remedyWithGain } from './sentence';
+import { headlineOf, helpful, reasonOf, remedyWithGain } from './sentence';
 
 export interface VerdictStripProps {
   verdict: Verdict | null;
@@ -15,9 +15,11 @@ export interface VerdictStripProps {
   /** The state that this step reads; a verdict on another state is not its verdict. */
   phase: Phase;
   href: string;
+  /** The reading to begin with, while there is none. */
+  begin: { antenna: string; quantity: Quantity } | null;
 }
 
-export function VerdictStrip({ verdict, sheet, problem, thinking, phase, href }: VerdictStripProps) {
+export function VerdictStrip({ verdict, sheet, problem, thinking, phase, href, begin }: VerdictStripProps) {
   if (problem) {
     return (
       <div class="strip plain" role="alert">
@@ -38,12 +40,12 @@ export function VerdictStrip({ verdict, sheet, problem, thinking, phase, href }:
         <p class="reason">
           <strong>{t(`strip.nothing.${phase}`)}</strong>
         </p>
-        {verdict.judged === 'planned' && <p class="then">{t('strip.plan', { word: t(`said.${verdict.word}`) })}</p>}
+        {begin && <p>{t('strip.begin', { antenna: begin.antenna, quantity: t(`quantity.${begin.quantity}`) })}</p>}
       </a>
     );
   }
   const headline = headlineOf(verdict);
-  const best = verdict.word === 'go' ? null : verdict.remedies[0];
+  const best = helpful(verdict);
   const reason = reasonOf(verdict, sheet);
   return (
     <>
@@ -60,9 +62,10 @@ export function VerdictStrip({ verdict, sheet, problem, thinking, phase, href }:
             </span>
           )}
         </span>
-        <span class="reason">{reason}</span>
+        <span class="reason">
+          {reason} <u>{t('strip.open')}</u>
+        </span>
         {best && <span class="then">{remedyWithGain(best)}</span>}
-        <span class="spoken">{t('strip.open')}</span>
       </a>
       <p class="spoken" aria-live="polite">
         {`${t(`said.${verdict.word}`)}. ${reason} ${best ? remedyWithGain(best) : ''}`}

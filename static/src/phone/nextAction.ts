@@ -1,37 +1,48 @@
-// The one thing to do next on a mount: what the first button of the page says.
+// What to do next on a mount: the first is the one big button of the page, a second may stand beside it.
 import type { LoggedEntry, PlannedMount, Quantity, Verdict } from '../types';
 import type { MountStep } from './route';
-import { turnedUnread, unread } from './steps';
+import { helpful } from './sentence';
+import { turnedUnread, unread, type Wanted } from './steps';
 
 export type Action =
   | { do: 'measure'; antenna: string; quantity: Quantity; again: boolean }
   | { do: 'turned'; antenna: string; quantity: Quantity }
   | { do: 'go'; to: MountStep | 'hand-in' };
 
-export function nextAction(step: MountStep, log: readonly LoggedEntry[], mount: PlannedMount, verdict: Verdict | null): Action | null {
-  const first = (list: { antenna: string; quantity: Quantity }[]): Action | null => (list[0] ? { do: 'measure', ...list[0], again: false } : null);
-  const decides = (): Action | null =>
-    verdict?.word === 'measure again' && verdict.deciding ? { do: 'measure', antenna: verdict.deciding.antenna, quantity: verdict.deciding.quantity, again: true } : null;
+const to = (step: MountStep | 'hand-in'): Action => ({ do: 'go', to: step });
+
+export function nextActions(step: MountStep, log: readonly LoggedEntry[], mount: PlannedMount, verdict: Verdict | null): Action[] {
+  const open = openReading(step, log, mount);
+  if (open) return [{ do: 'measure', antenna: open.antenna, quantity: open.quantity, again: false }];
+  if (!verdict) return [];
+  const deciding = verdict.word === 'measure again' ? verdict.deciding : null;
+  const again: Action[] = deciding ? [{ do: 'measure', antenna: deciding.antenna, quantity: deciding.quantity, again: true }] : [];
   switch (step) {
-    case 'as-found': {
-      const open = first(unread(log, mount, 'as_found'));
-      if (open || !verdict) return open;
-      if (verdict.word === 'go') return { do: 'go', to: 'hand-in' };
-      return verdict.word === 'no-go' ? { do: 'go', to: 'adjust' } : (decides() ?? { do: 'go', to: 'adjust' });
-    }
+    case 'as-found':
+      if (verdict.word === 'go') return [to('hand-in')];
+      return [...again, to('adjust')];
     case 'adjust': {
-      const open = first(turnedUnread(log, mount));
-      if (open || !verdict) return open;
-      if (verdict.word === 'go') return { do: 'go', to: 'as-left' };
-      const best = verdict.remedies[0];
-      if (verdict.word === 'no-go' && best) return { do: 'turned', antenna: best.antenna, quantity: best.quantity };
-      return first(verdict.missing) ?? decides() ?? { do: 'go', to: 'as-left' };
+      if (verdict.word === 'go') return [to('as-left')];
+      const best = helpful(verdict);
+      if (best) return [{ do: 'turned', antenna: best.antenna, quantity: best.quantity }, ...again];
+      const missing = verdict.missing[0];
+      if (missing) return [{ do: 'measure', antenna: missing.antenna, quantity: missing.quantity, again: false }];
+      return [...again, to('as-left')];
     }
-    case 'as-left': {
-      const open = first(unread(log, mount, 'as_left'));
-      if (open || !verdict) return open;
-      if (verdict.word === 'go') return { do: 'go', to: 'hand-in' };
-      return verdict.word === 'no-go' ? { do: 'go', to: 'adjust' } : (decides() ?? { do: 'go', to: 'hand-in' });
-    }
+    case 'as-left':
+      if (verdict.word === 'go') return [to('hand-in')];
+      return verdict.word === 'no-go' ? [to('adjust'), to('hand-in')] : [...again, to('hand-in')];
+  }
+}
+
+/** While adjusting only what was turned wants reading; before and after it, everything. */
+function openReading(step: MountStep, log: readonly LoggedEntry[], mount: PlannedMount): Wanted | undefined {
+  switch (step) {
+    case 'as-found':
+      return unread(log, mount, 'as_found')[0];
+    case 'adjust':
+      return turnedUnread(log, mount)[0];
+    case 'as-left':
+      return unread(log, mount, 'as_left')[0];
   }
 }

@@ -1,10 +1,17 @@
 // Sentences made from the codes and numbers of a verdict, so that every language makes its own.
-import { limitTitle, limitValue } from '../draw/limit';
+import { limitDoubted, limitTitle, limitValue } from '../draw/limit';
 import { turnSentence } from '../draw/turn';
 import type { LimitOutcome, Quantity, Remedy, Sheet, Verdict } from '../types';
 import { figure, percent, shortest } from '../words/figures';
 import { t } from '../words/words';
 import { readingsIn, statesOf } from '../draw/drawn';
+
+/** The best turn, where it helps: always while the word is no-go, else only if the word gets better by it. */
+export function helpful(verdict: Verdict): Remedy | null {
+  const best = verdict.remedies[0];
+  if (!best || verdict.word === 'go') return null;
+  return verdict.word === 'no-go' || best.word_after === 'go' ? best : null;
+}
 
 export function unitSign(unit: 'deg' | 'mm'): string {
   return unit === 'deg' ? '°' : ' mm';
@@ -12,9 +19,12 @@ export function unitSign(unit: 'deg' | 'mm'): string {
 
 /** The limit that the headline shows: the one that the reason names, else the one that is least sure to be kept. */
 export function headlineOf(verdict: Verdict): LimitOutcome | null {
+  // What was not read is taken as hung by eye: figures made of that would only look like readings.
+  if (verdict.reason.code === 'missing_reading') return null;
   const judged = verdict.limits.filter((l) => l.applicable && l.value !== null);
   const named = judged.find((l) => l.name === verdict.reason.limit);
   if (named) return named;
+  if (verdict.reason.code === 'doubt' && verdict.reason.limit !== null) return null; // its limit has no figure
   return [...judged].sort((a, b) => (a.probability ?? 1) - (b.probability ?? 1))[0] ?? null;
 }
 
@@ -55,7 +65,13 @@ function missingReason(verdict: Verdict): string {
 
 function doubtReason(verdict: Verdict, sheet: Sheet): string {
   const { deciding } = verdict;
-  if (!deciding) return t('reason.doubt-bare');
+  if (!deciding) {
+    const { limit } = verdict.reason;
+    const outcome = verdict.limits.find((l) => l.name === limit);
+    if (!limit || !outcome) return t('reason.doubt-bare');
+    if (outcome.value === null) return t('reason.unjudged', { limit: limitTitle(limit) });
+    return t('reason.doubt-limit', { limit: limitTitle(limit), value: limitDoubted(limit, outcome.value, outcome.u) });
+  }
   const sign = unitSign(deciding.unit);
   const params = {
     antenna: deciding.antenna,

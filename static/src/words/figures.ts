@@ -41,7 +41,10 @@ export function decimalsFor(u: number): number {
 export function withDoubt(value: number, u: number | null | undefined, fallback = 1): string {
   if (!u || !(u > 0)) return shortest(value, fallback);
   const decimals = decimalsFor(u);
-  return `${figure(value, decimals)} ± ${figure(u, decimals)}`;
+  const doubt = figure(u, decimals);
+  // A doubt below what is ever shown: the value stands alone.
+  if (!/[1-9]/.test(doubt)) return shortest(value, fallback);
+  return `${figure(value, decimals)} ± ${doubt}`;
 }
 
 /** Probability as whole percent, never rounded to certainty. */

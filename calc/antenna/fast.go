@@ -36,7 +36,7 @@ func arctangent2(x, z float64) float64 {
 }
 
 // ofAttenuation is 10^(−a/20) for 0 ≤ a ≤ 200 dB: the 64th power of a Taylor polynomial of degree 6, relative error
-// below 1e-7 up to 100 dB and 1e-5 up to 200 dB.
+// below 1e-7 up to 100 dB and 2e-5 up to 200 dB.
 func ofAttenuation(a float64) float64 {
 	const scale = -math.Ln10 / 20 / 64
 	x := a * scale

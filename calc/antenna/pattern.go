@@ -184,7 +184,7 @@ func (p *Pattern) Attenuation(az, el float64) float64 {
 	case Dipole:
 		s, c := math.Sincos(el)
 		f := math.Cos(math.Pi / 2 * s)
-		if f <= dipoleFloor*c || c <= 0 {
+		if c < dipoleFloor || f <= dipoleFloor*c {
 			return 120
 		}
 		return -20 * math.Log10(f/c)

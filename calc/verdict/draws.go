@@ -201,9 +201,8 @@ func (j *judge) drawsOf(dims int) *doubt.Draws {
 	return j.draws
 }
 
-// blocks of draws for a probability: 2048 points. At the guard of 0.95 the
-// probability is then within 0.004 of what a hundred times as many give; see
-// TestDrawsAreEnough.
+// blocks of draws for a probability: 2048 points. TestDrawsAreEnough compares with
+// a hundred times as many.
 const blocks = 1
 
 // score is how well a geometry alone holds the limits: the least margin over the

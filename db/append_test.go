@@ -532,3 +532,32 @@ func TestDeviceOrderKeepsOtherDevicesInPlace(t *testing.T) {
 		t.Errorf("got %v, want %v", got, want)
 	}
 }
+
+// Batches of several phones, as a second phone carries them: each device's entries by their own numbers, devices in the
+// order in which they first appear.
+func TestABatchIsTakenInDeviceOrder(t *testing.T) {
+	b := openBench(t)
+	p, q := newPhone(b.tam), newPhone(b.tam)
+	p1, p2 := p.write(b.job, NoteAdded, note("p1")), p.write(b.job, NoteAdded, note("p2"))
+	q1, q2 := q.write(b.job, NoteAdded, note("q1")), q.write(b.job, NoteAdded, note("q2"))
+	if got := deviceOrder([]Incoming{q2, p2, q1, raw("no entry"), p1}); fmt.Sprint(got) != "[2 0 4 1 3]" {
+		t.Errorf("taken in the order %v", got)
+	}
+	r := b.stored(b.tam, q2, p2, q1, p1)
+	if a := r.Answers; !(a[2].Seq < a[0].Seq && a[0].Seq < a[3].Seq && a[3].Seq < a[1].Seq) {
+		t.Errorf("seq %d %d %d %d", a[0].Seq, a[1].Seq, a[2].Seq, a[3].Seq)
+	}
+}
+
+// Of two different texts that were set apart under one number, the first stands for it.
+func TestTheFirstSetApartKeepsItsNumber(t *testing.T) {
+	b := openBench(t)
+	p := newPhone(b.tam)
+	first := p.write(newID(), NoteAdded, note("unknown job"))
+	p.seq, p.prev = 0, ""
+	b.append(b.tam, first, p.write(newID(), NoteAdded, note("another unknown job")))
+	if d, err := b.Device(t.Context(), p.device); err != nil || d.ContiguousHash != first.Hash {
+		t.Errorf("device %+v (%v), want the hash of the first", d, err)
+	}
+	b.proved()
+}

@@ -39,7 +39,8 @@ func deriveFromEntry(ctx context.Context, tx *sql.Tx, seq int64, e Entry) error 
 	job.Entries++
 	stage := job.Stage
 	switch e.Kind {
-	case ReadingTaken, ReadingWithdrawn, BoltMoved:
+	case ReadingTaken, ReadingWithdrawn, BoltMoved, PowerControlConfirmed, FiguresRead, ObstacleWasNoted:
+		// What is laid over the sheet: whatever was computed from it before is about less than is known now.
 		job.ReadingsSeq = seq
 	}
 	switch e.Kind {

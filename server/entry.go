@@ -113,9 +113,7 @@ func (s *Server) raiseObjections(ctx context.Context, batch []db.Incoming) error
 			plans[e.Job] = *plan
 			continue
 		}
-		switch e.Kind {
-		case db.ReadingTaken, db.BoltMoved, db.ReadingWithdrawn:
-		default:
+		if !laidOverSheet(e.Kind) {
 			continue
 		}
 		plan, known := plans[e.Job]
@@ -139,6 +137,15 @@ func (s *Server) raiseObjections(ctx context.Context, batch []db.Incoming) error
 		}
 	}
 	return nil
+}
+
+// laidOverSheet tells the kinds that mount.fold lays over a sheet.
+func laidOverSheet(kind string) bool {
+	switch kind {
+	case db.ReadingTaken, db.ReadingWithdrawn, db.BoltMoved, db.PowerControlConfirmed, db.FiguresRead, db.ObstacleWasNoted:
+		return true
+	}
+	return false
 }
 
 // checkSheets reads every sheet of a plan; the field names the mount.

@@ -69,8 +69,7 @@ func readingsByMount(log []db.LogEntry) (map[string][]db.Entry, error) {
 		if err != nil {
 			return nil, err
 		}
-		switch e.Kind {
-		case db.ReadingTaken, db.ReadingWithdrawn, db.BoltMoved, db.PowerControlConfirmed, db.FiguresRead, db.ObstacleWasNoted:
+		if laidOverSheet(e.Kind) {
 			entries = append(entries, e)
 		}
 	}

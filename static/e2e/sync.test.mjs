@@ -146,6 +146,20 @@ test('only the entries that were answered for leave the outbox', async () => {
   assert.deepEqual([...server.stored.keys()], ids);
 });
 
+test('an answer about an entry that was not in the request is no answer', async () => {
+  const ids = await notes(51);
+  let first = true;
+  server.spoil = (url, body) => {
+    if (url !== '/api/entries' || !first) return null;
+    first = false;
+    const answers = server.take(body.entries);
+    return json({ answers: [...answers, { id: ids[50], status: 'stored', seq: 51, reason: null }], epoch: 1, head: server.head() });
+  };
+  await phone.push();
+  assert.deepEqual(server.uploads(), [50, 1]);
+  assert.ok(server.stored.has(ids[50]));
+});
+
 test('a server that answers for nothing is not asked for ever', async () => {
   await notes(2);
   server.spoil = (url) => (url === '/api/entries' ? json({ answers: [], epoch: 1, head: server.head() }) : null);
@@ -238,6 +252,7 @@ test('jobs come in with the entries of others, and own ones that come back are s
     ['0191e9a4-0000-7000-8000-00000000000a', false, 'safe', 4],
   ]);
   assert.equal((await phone.counts()).waiting, 0);
+  assert.deepEqual(await phone.nextBatch(50, 1e6), [], 'it is not sent once more');
   await phone.pull();
   assert.equal(pages, 1, 'a job that did not move is not fetched again');
   summary.words = { m1: 'no-go' };

@@ -8,6 +8,7 @@ import (
 	"github.com/gofiber/fiber/v2"
 
 	"crossplumb/calc/wire"
+	"crossplumb/calc/wire/schema"
 )
 
 // GET /api/calc lists the operations.
@@ -43,4 +44,14 @@ func (s *Server) calculate(c *fiber.Ctx) error {
 	}
 	c.Set(fiber.HeaderContentType, "application/json; charset=utf-8")
 	return c.Status(http.StatusOK).Send(out)
+}
+
+// GET /api/calc/:op/schema is what an operation takes and gives, as JSON Schema.
+func (s *Server) showSchema(c *fiber.Ctx) error {
+	op, err := operation(c)
+	if err != nil {
+		return err
+	}
+	in, out := schema.For(op)
+	return answer(c, http.StatusOK, map[string]any{"operation": op, "in": rawJSON(in), "out": rawJSON(out)})
 }

@@ -44,7 +44,8 @@ func matrix() map[string]row {
 		"GET /api/session":    signedIn("/api/session"),
 		"DELETE /api/session": {"/api/session", empty, [6]int{401, 204, 204, 204, 401, 401}},
 
-		"GET /api/calc": signedIn("/api/calc"),
+		"GET /api/calc":            signedIn("/api/calc"),
+		"GET /api/calc/:op/schema": signedIn("/api/calc/spacing.wavelengths/schema"),
 		"POST /api/calc/:op": {"/api/calc/spacing.wavelengths", func(*site) string {
 			return `{"frequency_mhz":5800,"spacing_mm":{"right":100,"up":0,"forward":0},"off_broadside_deg":0}`
 		}, [6]int{401, 200, 200, 200, 401, 401}},

@@ -13,6 +13,8 @@ import (
 	"time"
 
 	"github.com/google/uuid"
+
+	"crossplumb/calc/wire"
 )
 
 var agreement = sync.OnceValue(func() map[string]any {
@@ -283,11 +285,38 @@ func TestTheAgreementIsServed(t *testing.T) {
 	s := openSite(t)
 	a := s.do(call{method: "GET", path: "/api/openapi.json", cookie: s.cookie(s.tam), status: 200})
 	var doc struct {
-		OpenAPI string         `json:"openapi"`
-		Paths   map[string]any `json:"paths"`
+		OpenAPI    string         `json:"openapi"`
+		Paths      map[string]any `json:"paths"`
+		Components struct {
+			Schemas map[string]any `json:"schemas"`
+		} `json:"components"`
 	}
 	a.into(t, &doc)
-	if doc.OpenAPI != "3.1.0" || len(doc.Paths) < 10 {
-		t.Errorf("openapi %q with %d paths", doc.OpenAPI, len(doc.Paths))
+	if doc.OpenAPI != "3.1.0" {
+		t.Errorf("openapi %q", doc.OpenAPI)
+	}
+	for path := range agreement()["paths"].(map[string]any) {
+		if doc.Paths[path] == nil {
+			t.Errorf("%s was lost", path)
+		}
+	}
+	for _, op := range wire.Operations() {
+		if doc.Paths["/api/calc/"+op] == nil {
+			t.Errorf("no address for %s", op)
+		}
+		var one struct {
+			Operation string
+			In, Out   map[string]any
+		}
+		s.do(call{method: "GET", path: "/api/calc/" + op + "/schema", cookie: s.cookie(s.tam), status: 200}).into(t, &one)
+		if one.Operation != op || one.In["type"] != "object" || one.Out["type"] != "object" {
+			t.Errorf("the schema of %s is %v", op, one)
+		}
+	}
+	// Every reference leads somewhere.
+	for _, found := range regexp.MustCompile(`"\$ref":"([^"]+)"`).FindAllStringSubmatch(a.body, -1) {
+		if name := strings.TrimPrefix(found[1], "#/components/schemas/"); doc.Components.Schemas[name] == nil {
+			t.Errorf("%s leads nowhere", found[1])
+		}
 	}
 }

@@ -15,6 +15,7 @@ func (s *Server) routes() {
 	api.Delete("/session", s.anybody(s.signOut))
 
 	api.Get("/calc", s.anybody(s.listOperations))
+	api.Get("/calc/:op/schema", s.anybody(s.showSchema))
 	api.Post("/calc/:op", s.anybody(s.calculate))
 
 	api.Post("/entries", s.anybody(s.takeEntries))

@@ -99,6 +99,9 @@ func (j *judge) runEvery(b *belief, stride int) *outcome {
 		response, delta = make([]float64, j.flow.size), make([]float64, len(b.surface.axes))
 		if b.surface.rough {
 			stride = max(stride, directStride)
+			if b.incomplete {
+				stride = 4 * directStride // no word hangs on it
+			}
 			j.flow.exact(b.surface.at) // the anchor of what is computed below
 		}
 	}

@@ -114,7 +114,7 @@ func Judge(s *sheet.Sheet) (*Verdict, *codec.Problem) {
 			v.NotJudged = append(v.NotJudged, NotJudged{j.limits[k].Name, j.limits[k].whoNot})
 		}
 	}
-	v.Word = j.word(o.joint, len(v.Missing) > 0, len(v.NotJudged) > 0)
+	v.Word = j.word(b, o.joint)
 	if beliefs[sheet.AsFound].readings > 0 {
 		v.AsFound = j.stateOutcome(beliefs[sheet.AsFound], v, o)
 	}
@@ -208,14 +208,32 @@ func (j *judge) unjudged(why string) {
 	}
 }
 
-// word is the word for a probability; never go while a reading or a limit is
-// missing from it.
-func (j *judge) word(p float64, missing, notJudged bool) string {
+// word is the word for the probability of a belief. With a reading or a limit
+// missing it is never go; and with a reading missing it is no-go only where the
+// mount would fail even if all that nobody measured hung exactly as planned.
+func (j *judge) word(b *belief, p float64) string {
 	w := wordOf(p)
-	if w == Go && (missing || notJudged) {
+	if w == Go && (b.incomplete || j.notJudged()) {
+		return MeasureAgain
+	}
+	if w == NoGo && b.incomplete && wordOf(j.runEvery(j.atBest(b), 2).joint) != NoGo {
 		return MeasureAgain
 	}
 	return w
+}
+
+// atBest is a belief in which everything of the near end that was not measured
+// hangs exactly as planned.
+func (j *judge) atBest(b *belief) *belief {
+	c := *b
+	c.est = append([]doubt.Estimate(nil), b.est...)
+	c.surface, c.incomplete = nil, false
+	for at := range j.at(j.near, 0) {
+		if !b.measured[at] {
+			c.est[at] = doubt.Estimate{Value: j.plan[at]}
+		}
+	}
+	return &c
 }
 
 func (j *judge) stateOutcome(b *belief, v *Verdict, judged *outcome) *StateOutcome {
@@ -223,8 +241,7 @@ func (j *judge) stateOutcome(b *belief, v *Verdict, judged *outcome) *StateOutco
 	if b.state != v.Judged {
 		o = j.run(b)
 	}
-	w := j.word(o.joint, len(j.model.missing(b)) > 0, len(v.NotJudged) > 0)
-	return &StateOutcome{Word: w, Probability: o.joint, Limits: j.report(o)}
+	return &StateOutcome{Word: j.word(b, o.joint), Probability: o.joint, Limits: j.report(o)}
 }
 
 // finite is nil for a number without end.

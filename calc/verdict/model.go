@@ -198,11 +198,12 @@ func (m *model) pair() []int {
 
 // belief is what one state of the mount is known to be.
 type belief struct {
-	state    sheet.State
-	est      []doubt.Estimate // one for each number of each body
-	measured []bool           // read, or exact by convention
-	readings int              // of the near end
-	looks    []int            // readings pooled for each number
+	state      sheet.State
+	est        []doubt.Estimate // one for each number of each body
+	measured   []bool           // read, or exact by convention
+	readings   int              // of the near end
+	looks      []int            // readings pooled for each number
+	incomplete bool             // a reading of the near end is missing
 
 	surface *surface // of the stream metrics, built when first needed
 	only    []bool   // the numbers that it has axes for; nil: all
@@ -249,6 +250,7 @@ func (m *model) believe(state sheet.State) (*belief, *codec.Problem) {
 		}
 		m.correctLevel(b, i, st)
 	}
+	b.incomplete = len(m.missing(b)) > 0
 	return b, m.apart(b)
 }
 

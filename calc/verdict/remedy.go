@@ -91,8 +91,6 @@ func (j *judge) remedies(b *belief, o *outcome) []Remedy {
 	if len(moves) > maxRemedies {
 		moves = moves[:maxRemedies]
 	}
-	missing := len(j.model.missing(b)) > 0
-	notJudged := j.notJudged()
 	before := &o.summary[critical]
 	var out []Remedy
 	for _, m := range moves {
@@ -112,7 +110,7 @@ func (j *judge) remedies(b *belief, o *outcome) []Remedy {
 			Antenna: j.bodies[m.body].antenna.ID, Quantity: m.q.String(), Axis: m.q.axis(), Unit: m.q.unit(),
 			Change: m.q.border(m.by), Direction: m.q.direction(m.by), Limit: j.limits[critical].Name,
 			From: finite(before.Median), To: finite(s.Median),
-			ProbabilityAfter: after.joint, WordAfter: j.word(after.joint, missing, notJudged),
+			ProbabilityAfter: after.joint, WordAfter: j.word(&moved, after.joint),
 		}
 		r.Text = remedyText(r, m.q)
 		out = append(out, r)

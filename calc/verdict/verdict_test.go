@@ -142,6 +142,23 @@ func TestAMissingReadingIsNeverGo(t *testing.T) {
 	}
 }
 
+// TestNobodyMeasuredIsNoFault: what nobody measured hangs as planned or does not;
+// only readings can say no-go.
+func TestNobodyMeasuredIsNoFault(t *testing.T) {
+	s := job(t, "two-omnis-half-wavelength")
+	s.Limits = s.Limits[2:] // position within 5 mm, hung by eye to 50
+	s.Near.Antennas[1].Position.AsLeft = nil
+	v := judged(t, s)
+	if v.Word != verdict.MeasureAgain || v.Reason.Code != verdict.MissingReading || v.Reason.Quantity != "position" {
+		t.Errorf("position not measured: %s, %+v", v.Word, v.Reason)
+	}
+	s = job(t, "crossed-pair-no-go")
+	s.Near.Antennas[0].Tilt.AsLeft = nil
+	if v := judged(t, s); v.Word != verdict.NoGo {
+		t.Errorf("8° of skew measured, tilt not: %s, %+v", v.Word, v.Reason)
+	}
+}
+
 // TestTheSameSkewTwoRadios: 8° of common skew. The tied radio is disturbed, the
 // combining one is not, and the tool says so instead of calling it a fault.
 func TestTheSameSkewTwoRadios(t *testing.T) {
@@ -296,8 +313,9 @@ func ExampleJudge() {
 	// Turn A 8.2° anticlockwise: 27 dB, go
 }
 
+// BenchmarkJudge is the full verdict of each job: both states, doubt, remedies.
 func BenchmarkJudge(b *testing.B) {
-	for _, name := range []string{"crossed-pair-go", "crossed-pair-no-go", "crossed-pair-measure-again", "two-crossed-panels"} {
+	for _, name := range []string{"crossed-pair-go", "crossed-pair-no-go", "crossed-pair-measure-again", "crossed-pair-skewed-combining", "two-omnis-half-wavelength", "two-crossed-panels", "four-crossed-panels"} {
 		b.Run(name, func(b *testing.B) {
 			s := job(b, name)
 			for b.Loop() {
@@ -305,4 +323,14 @@ func BenchmarkJudge(b *testing.B) {
 			}
 		})
 	}
+	b.Run("four-crossed-panels, nothing measured", func(b *testing.B) {
+		s := job(b, "four-crossed-panels")
+		for i := range s.Near.Antennas {
+			a := &s.Near.Antennas[i]
+			a.Skew.AsLeft, a.Tilt.AsLeft, a.Azimuth.AsLeft, a.Position.AsLeft = nil, nil, nil, nil
+		}
+		for b.Loop() {
+			judged(b, s)
+		}
+	})
 }

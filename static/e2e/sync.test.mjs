@@ -100,6 +100,7 @@ test('nothing that is not the server counts as an answer', async () => {
     'another shape': () => json({ ok: true }),
     'answers without a head': (body) => json({ answers: server.take(body.entries), epoch: 1 }),
     'an unknown status': (body) => json({ answers: [{ id: JSON.parse(body.entries[0].raw).id, status: 'fine' }], epoch: 1, head: server.head() }),
+    'the right words under the wrong status': (body) => json({ answers: server.take(body.entries), epoch: 1, head: server.head() }, 503),
     'busy': () => problem(503, 'busy'),
     'too many': () => problem(429, 'too_many'),
     'signed out': () => problem(401, 'signed_out'),

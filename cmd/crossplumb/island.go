@@ -238,6 +238,7 @@ func crossedPairSheet(title string, bearing, elevation, distance float64, measur
 		Surroundings: surroundings{Sight: true, Spreads: &spreads{Near: spread{8, 2}, Far: spread{10, 2}, KDB: ptr(12.0),
 			XPRDB: 12, Spectrum: "laplacian"}},
 		Limits: []limit{
+			{Name: "effective_streams", AtLeast: ptr(1.8), Reason: "two streams were sold on this link"},
 			{Name: "crosstalk_db", AtLeast: ptr(20.0), Reason: "this radio ties port to port: 20 dB of cross-talk leaves 18.8 of a 25 dB link"},
 			{Name: "pointing_loss_db", AtMost: ptr(1.5), Reason: "the link budget keeps 1.5 dB for aim at both ends together"},
 			{Name: "tilt_deviation_deg", AtMost: ptr(3.0), Reason: "the owner's drawing"},
@@ -257,6 +258,7 @@ func omniPairSheet(title string, bearing, distance, apart, placeTolerance float6
 		Surroundings: surroundings{Class: &class{Standard: "3GPP TR 38.901", Edition: "V16.1.0", Scenario: "UMi",
 			MastEnd: "near"}},
 		Limits: []limit{
+			{Name: "effective_streams", AtLeast: ptr(1.7), Reason: "the cell was planned with two streams"},
 			{Name: "envelope_correlation", AtMost: ptr(0.5), Reason: "above 0.5 the second stream begins to go (common practice)"},
 			{Name: "skew_deviation_deg", AtMost: ptr(4.0), Reason: "the owner's drawing: upright to the eye"},
 			{Name: "tilt_deviation_deg", AtMost: ptr(4.0), Reason: "the owner's drawing: upright to the eye"},

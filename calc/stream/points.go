@@ -365,8 +365,8 @@ func shrink(x []complex128, by float64) {
 	}
 }
 
-// quantile is the normal quantile, tabulated between 1/256 and 255/256 with cubic interpolation through the exact
-// derivative (error below 2e-9) and computed outside.
+// quantile is the normal quantile, tabulated between 1/32 and 31/32 with cubic interpolation through the exact
+// derivative (error below 2e-7) and computed outside.
 type quantile struct {
 	z, slope [quantileCells + 1]float64
 }
@@ -386,7 +386,7 @@ func newQuantile() *quantile {
 func (q *quantile) at(u float64) float64 {
 	x := u * quantileCells
 	i := int(x)
-	if i < 8 || i >= quantileCells-8 {
+	if i < 16 || i >= quantileCells-16 {
 		return mathext.NormalQuantile(u)
 	}
 	t := x - float64(i)

@@ -15,6 +15,10 @@ func svd(a []complex128, rows, cols int) (u []complex128, s []float64, v []compl
 	for j := range cols {
 		v[j*cols+j] = 1
 	}
+	total := 0.0
+	for _, x := range w {
+		total += abs2(x)
+	}
 	for range 60 {
 		rotated := false
 		for p := range cols {
@@ -27,8 +31,10 @@ func svd(a []complex128, rows, cols int) (u []complex128, s []float64, v []compl
 					yy += abs2(y[i])
 					xy += conj(x[i]) * y[i]
 				}
-				g := math.Sqrt(abs2(xy))
-				if g <= 1e-15*math.Sqrt(xx*yy) || g == 0 {
+				g := math.Hypot(real(xy), imag(xy))
+				// What is left of a column below 1e-17 of the matrix is rounding: turning it on would end in underflow, where a
+				// phase is none.
+				if g <= 1e-15*math.Sqrt(xx*yy) || min(xx, yy) <= 1e-34*total {
 					continue
 				}
 				rotated = true

@@ -1,9 +1,9 @@
 // Value, doubt and limit on one line: a track, a band from the 2.5 % to the 97.5 % point, a tick at the value, the limit
 // as a flag that points to where it is kept, and hatching, as on a section drawing, where it is not.
 import { useId } from 'preact/hooks';
-import type { LimitOutcome } from '../types';
-import { t } from '../words/words';
-import { limitDoubted, limitScale, limitTitle, limitValue, standingOf } from './limit';
+import type { LimitOutcome } from '../types.ts';
+import { t } from '../words/words.ts';
+import { limitDoubted, limitScale, limitTitle, limitValue, standingOf } from './limit.ts';
 
 export interface LimitLineProps {
   outcome: LimitOutcome;

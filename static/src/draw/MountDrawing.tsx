@@ -1,13 +1,13 @@
 // The mount as seen from behind, to scale: the form that readings are entered through. White sheets with ink outlines are
 // antennas where they were measured, dashed ones are not read yet, thick strokes are polarizations, a dashed ghost is the
 // plan, wine is what is off, with the turn that helps.
-import type { Quantity, Remedy } from '../types';
-import { figure, shortest } from '../words/figures';
-import { t } from '../words/words';
-import type { DrawnAntenna, DrawnPlace, DrawnSpacing } from './drawn';
-import { type Layout, type Paper, layoutOf, paperFor, scaleBar } from './paper';
-import { amountOf, turnAmount, wayOf } from './turn';
-import { useWidth } from './useWidth';
+import type { Quantity, Remedy } from '../types.ts';
+import { figure, shortest } from '../words/figures.ts';
+import { t } from '../words/words.ts';
+import type { DrawnAntenna, DrawnPlace, DrawnSpacing } from './drawn.ts';
+import { type Layout, type Paper, layoutOf, paperFor, scaleBar } from './paper.ts';
+import { amountOf, turnAmount, wayOf } from './turn.ts';
+import { useWidth } from './useWidth.ts';
 
 export interface MountDrawingProps {
   antennas: DrawnAntenna[];

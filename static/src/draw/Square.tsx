@@ -1,6 +1,6 @@
 // The sign of the verdict. Pairs should stand square: go is a true square, no-go one pushed out of square, measure
 // again a dashed one. Form alone tells them apart; the word always stands beside it.
-import type { Word } from '../types';
+import type { Word } from '../types.ts';
 
 export interface SquareProps {
   word: Word;

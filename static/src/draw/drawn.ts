@@ -1,6 +1,6 @@
 // From a mount sheet and what calc made of it to what is drawn. Places and angles come from calc; nothing is worked out
 // here but where on the paper they go.
-import type { Antenna, Geometry, PlacedAntenna, Quantity, Reading, Remedy, Sheet, State, Verdict } from '../types';
+import type { Antenna, Geometry, PlacedAntenna, Quantity, Reading, Remedy, Sheet, State, Verdict } from '../types.ts';
 
 export type Shape = 'panel' | 'omni' | 'dish' | 'point';
 

@@ -1,7 +1,7 @@
 // How each limit is named, scaled and written: shared by phone, desk and paper.
-import type { LimitName, LimitOutcome } from '../types';
-import { decimalsFor, figure, shortest, withDoubt } from '../words/figures';
-import { t } from '../words/words';
+import type { LimitName, LimitOutcome } from '../types.ts';
+import { decimalsFor, figure, shortest, withDoubt } from '../words/figures.ts';
+import { t } from '../words/words.ts';
 
 interface Manner {
   /** Sign after the number, with its space. */

@@ -1,5 +1,5 @@
 // Where things go on the paper: millimetres of the mount, as seen from behind, to CSS pixels.
-import type { DrawnAntenna, DrawnPlace } from './drawn';
+import type { DrawnAntenna, DrawnPlace } from './drawn.ts';
 
 export interface Paper {
   width: number;

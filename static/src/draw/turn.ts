@@ -1,7 +1,7 @@
 // A remedy in words, from its numbers: how much, which way.
-import type { Remedy } from '../types';
-import { shortest } from '../words/figures';
-import { t } from '../words/words';
+import type { Remedy } from '../types.ts';
+import { shortest } from '../words/figures.ts';
+import { t } from '../words/words.ts';
 
 /** "clockwise", "up", "left" …: the sign of the change tells it for angles, calc names it for places. */
 export function wayOf(remedy: Remedy): string {

@@ -1,7 +1,7 @@
 // Keys big enough for a glove. They write into the field that has the focus mark; a keyboard works beside them.
-import { t } from '../words/words';
-import { currentDecimalSign } from '../words/figures';
-import { Button } from './Button';
+import { t } from '../words/words.ts';
+import { currentDecimalSign } from '../words/figures.ts';
+import { Button } from './Button.tsx';
 
 export interface KeypadProps {
   /** Applies a key to the text of the field in use. */

@@ -1,6 +1,6 @@
 // A number with its unit. What was typed stays as it was typed, right or wrong; the answer stands under the field.
 import type { Ref } from 'preact';
-import { Message } from './Message';
+import { Message } from './Message.tsx';
 
 export interface NumberEntryProps {
   id: string;

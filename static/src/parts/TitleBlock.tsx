@@ -1,7 +1,7 @@
 // Head of a page, ruled like the title block of a drawing: where back leads, what this is, where it stands.
 import type { ComponentChildren } from 'preact';
-import { t } from '../words/words';
-import { Button } from './Button';
+import { t } from '../words/words.ts';
+import { Button } from './Button.tsx';
 
 export interface TitleBlockProps {
   title: string;

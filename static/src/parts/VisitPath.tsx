@@ -1,6 +1,6 @@
 // The path of the visit: a row of squares, filled when done, open when not, heavy where the person stands. Every one of
 // them can be opened at any time.
-import { t } from '../words/words';
+import { t } from '../words/words.ts';
 
 export interface VisitStep {
   key: string;

@@ -1,7 +1,7 @@
 // A verdict's square with its word, in lists and tables.
-import { Square, toneOf } from '../draw/Square';
-import type { Word } from '../types';
-import { t } from '../words/words';
+import { Square, toneOf } from '../draw/Square.tsx';
+import type { Word } from '../types.ts';
+import { t } from '../words/words.ts';
 
 export function WordMark({ word, size = 24 }: { word: Word; size?: number }) {
   return (

@@ -1,10 +1,10 @@
 // Own entries that the server set apart, with its reason, in its words: a supervisor sees the same.
-import { Button } from '../parts/Button';
-import { needingPerson, sendAgain, useStored } from '../store';
-import type { Entry } from '../types';
-import { when } from '../words/when';
-import { t } from '../words/words';
-import { Page } from './Page';
+import { Button } from '../parts/Button.tsx';
+import { needingPerson, sendAgain, useStored } from '../store/index.ts';
+import type { Entry } from '../types.ts';
+import { when } from '../words/when.ts';
+import { t } from '../words/words.ts';
+import { Page } from './Page.tsx';
 
 export function Apart() {
   const list = useStored(needingPerson, []);

@@ -1,21 +1,21 @@
 // The usual cautions before the climb. A confirmation is logged with name, time and the version of the text; nothing on
 // the following pages waits for it.
 import { useState } from 'preact/hooks';
-import { Button } from '../parts/Button';
-import { Message } from '../parts/Message';
-import { addEntry, useWatched } from '../store';
-import { session } from '../sync';
-import { type Caution, cautions, cautionVersion } from '../words/cautions';
-import { when } from '../words/when';
-import { t } from '../words/words';
-import { DeskRemark } from './DeskRemark';
-import { Gone } from './Gone';
-import { saidOf } from './log';
-import { Page } from './Page';
-import { stepsOf } from './steps';
-import { useJob } from './useJob';
-import { Visit } from './Visit';
-import { hrefOf } from './route';
+import { Button } from '../parts/Button.tsx';
+import { Message } from '../parts/Message.tsx';
+import { addEntry, useWatched } from '../store/index.ts';
+import { session } from '../sync/index.ts';
+import { type Caution, cautions, cautionVersion } from '../words/cautions.ts';
+import { when } from '../words/when.ts';
+import { t } from '../words/words.ts';
+import { DeskRemark } from './DeskRemark.tsx';
+import { Gone } from './Gone.tsx';
+import { saidOf } from './log.ts';
+import { Page } from './Page.tsx';
+import { stepsOf } from './steps.ts';
+import { useJob } from './useJob.ts';
+import { Visit } from './Visit.tsx';
+import { hrefOf } from './route.ts';
 
 export function Before({ id }: { id: string }) {
   const open = useJob(id);
@@ -90,8 +90,8 @@ export function Before({ id }: { id: string }) {
                   {wrong.text}
                 </Message>
               )}
-              <Button wide busy={busy === caution} onPress={() => void confirm(caution)} label={t('before.confirm', { caution: title })}>
-                {last ? t('before.again') : t('before.confirm', { caution: title })}
+              <Button wide busy={busy === caution} onPress={() => void confirm(caution)}>
+                {t(last ? 'before.again' : 'before.confirm', { caution: title })}
               </Button>
             </li>
           );

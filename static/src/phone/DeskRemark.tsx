@@ -1,7 +1,7 @@
 // What the desk said when it sent the job back: first on every page of the job until the work is handed in again.
-import { Message } from '../parts/Message';
-import type { PhoneJob } from '../types';
-import { t } from '../words/words';
+import { Message } from '../parts/Message.tsx';
+import type { PhoneJob } from '../types.ts';
+import { t } from '../words/words.ts';
 
 export function DeskRemark({ job }: { job: PhoneJob }) {
   if (job.stage === 'signed off') {

@@ -1,7 +1,7 @@
 // Where a job should be and is not, or is not looked up yet.
-import { Button } from '../parts/Button';
-import { t } from '../words/words';
-import { Page } from './Page';
+import { Button } from '../parts/Button.tsx';
+import { t } from '../words/words.ts';
+import { Page } from './Page.tsx';
 
 export function Gone({ looking }: { looking: boolean }) {
   if (looking) return <p class="opening">{t('loading')}</p>;

@@ -1,22 +1,22 @@
 // Handing in: the verdict of each mount, what is open, a remark; a person decides. Afterwards: where it is.
 import { useEffect, useState } from 'preact/hooks';
-import { Button } from '../parts/Button';
-import { Message } from '../parts/Message';
-import { WordMark } from '../parts/WordMark';
-import { addEntry, dropDraft, getDraft, setDraft } from '../store';
-import type { LoggedEntry, PhoneJob } from '../types';
-import { when } from '../words/when';
-import { t } from '../words/words';
-import { DeskRemark } from './DeskRemark';
-import { Gone } from './Gone';
-import { saidOf } from './log';
-import { Page } from './Page';
-import { hrefOf } from './route';
-import { reasonOf } from './sentence';
-import { useJob } from './useJob';
-import { turnedUnread, unconfirmed, unread, wantedOf } from './steps';
-import { type MountVerdict, useWholeVerdicts } from './whole';
-import { Visit } from './Visit';
+import { Button } from '../parts/Button.tsx';
+import { Message } from '../parts/Message.tsx';
+import { WordMark } from '../parts/WordMark.tsx';
+import { addEntry, dropDraft, getDraft, setDraft } from '../store/index.ts';
+import type { LoggedEntry, PhoneJob } from '../types.ts';
+import { when } from '../words/when.ts';
+import { t } from '../words/words.ts';
+import { DeskRemark } from './DeskRemark.tsx';
+import { Gone } from './Gone.tsx';
+import { saidOf } from './log.ts';
+import { Page } from './Page.tsx';
+import { hrefOf } from './route.ts';
+import { reasonOf } from './sentence.ts';
+import { useJob } from './useJob.ts';
+import { turnedUnread, unconfirmed, unread, wantedOf } from './steps.ts';
+import { type MountVerdict, useWholeVerdicts } from './whole.ts';
+import { Visit } from './Visit.tsx';
 
 export function HandIn({ id }: { id: string }) {
   const open = useJob(id);
@@ -57,7 +57,7 @@ export function HandIn({ id }: { id: string }) {
       );
       setRemark('');
       setTrouble(null);
-      scrollTo(0, 0);
+      document.querySelector('.sheet')?.scrollTo(0, 0);
     } catch (error) {
       setTrouble(t('failed.write', { why: error instanceof Error ? error.message : String(error) }));
     }

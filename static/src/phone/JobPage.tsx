@@ -1,23 +1,23 @@
 // One job: what the desk said, the path, the mounts, the site with access and emergency in large type, notes.
 import { useEffect, useState } from 'preact/hooks';
-import { Button } from '../parts/Button';
-import { Message } from '../parts/Message';
-import { WordMark } from '../parts/WordMark';
-import { addEntry, dropDraft, getDraft, setDraft } from '../store';
-import type { LoggedEntry, PhoneJob } from '../types';
-import { figure } from '../words/figures';
-import { day, when } from '../words/when';
-import { t } from '../words/words';
-import { DeskRemark } from './DeskRemark';
-import { Gone } from './Gone';
-import { saidOf } from './log';
-import { Page } from './Page';
-import { hrefOf } from './route';
-import { useJob } from './useJob';
-import { nextStep, unread } from './steps';
-import { titleBeside } from './titles';
-import { Visit } from './Visit';
-import { useWholeVerdicts } from './whole';
+import { Button } from '../parts/Button.tsx';
+import { Message } from '../parts/Message.tsx';
+import { WordMark } from '../parts/WordMark.tsx';
+import { addEntry, dropDraft, getDraft, setDraft } from '../store/index.ts';
+import type { LoggedEntry, PhoneJob } from '../types.ts';
+import { figure } from '../words/figures.ts';
+import { day, when } from '../words/when.ts';
+import { t } from '../words/words.ts';
+import { DeskRemark } from './DeskRemark.tsx';
+import { Gone } from './Gone.tsx';
+import { saidOf } from './log.ts';
+import { Page } from './Page.tsx';
+import { hrefOf } from './route.ts';
+import { useJob } from './useJob.ts';
+import { nextStep, unread } from './steps.ts';
+import { titleBeside } from './titles.ts';
+import { Visit } from './Visit.tsx';
+import { useWholeVerdicts } from './whole.ts';
 
 export function JobPage({ id }: { id: string }) {
   const open = useJob(id);

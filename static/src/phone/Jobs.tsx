@@ -1,18 +1,18 @@
 // The jobs that this phone took along, what waits on it, and how it is prepared for a place without coverage.
 import { useState } from 'preact/hooks';
-import { Button } from '../parts/Button';
-import { Choice } from '../parts/Choice';
-import { Message } from '../parts/Message';
-import { WordMark } from '../parts/WordMark';
-import { counts, jobs, storageProtection, useStored, useWatched } from '../store';
-import { EntriesWait, NoAnswer, newVersionWaits, readyOffline, session, signOut, status, syncNow, takeNewVersion } from '../sync';
-import type { PhoneJob } from '../types';
-import { day, today, when } from '../words/when';
-import { t } from '../words/words';
-import { Page } from './Page';
-import { titleBeside } from './titles';
-import { hrefOf } from './route';
-import { currentTheme, keepTheme, type Theme, themes } from './theme';
+import { Button } from '../parts/Button.tsx';
+import { Choice } from '../parts/Choice.tsx';
+import { Message } from '../parts/Message.tsx';
+import { WordMark } from '../parts/WordMark.tsx';
+import { counts, jobs, storageProtection, useStored, useWatched } from '../store/index.ts';
+import { EntriesWait, NoAnswer, newVersionWaits, readyOffline, session, signOut, status, syncNow, takeNewVersion } from '../sync/index.ts';
+import type { PhoneJob } from '../types.ts';
+import { day, today, when } from '../words/when.ts';
+import { t } from '../words/words.ts';
+import { Page } from './Page.tsx';
+import { titleBeside } from './titles.ts';
+import { hrefOf } from './route.ts';
+import { currentTheme, keepTheme, type Theme, themes } from './theme.ts';
 
 export function Jobs() {
   const list = useStored(jobs, []);

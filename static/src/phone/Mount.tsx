@@ -1,27 +1,27 @@
 // One mount at one step of the visit: the drawing that readings are entered through, the readings as a list, the verdict
 // and the next thing to do in thumb's reach.
 import { useEffect, useState } from 'preact/hooks';
-import { drawnFrom, drawnRemedy, type DrawnAntenna, quantitiesOf, statesOf } from '../draw/drawn';
-import { MountDrawing } from '../draw/MountDrawing';
-import { Button } from '../parts/Button';
-import { addEntry } from '../store';
-import type { Antenna, LoggedEntry, Phase, PlannedMount, Quantity, Reading, States } from '../types';
-import { decimalsFor, figure, shortest } from '../words/figures';
-import { t } from '../words/words';
-import { DeskRemark } from './DeskRemark';
-import { Gone } from './Gone';
-import { useJudged } from './judge';
-import { lastTurn, standing } from './log';
-import { axes, type Axis, directedOf, saidReading, wayName } from './manner';
-import { type Action, nextActions } from './nextAction';
-import { type Notice, takeNotice } from './notice';
-import { Page } from './Page';
-import { go, hrefOf, type MountStep, phaseOf } from './route';
-import { mirrorFact } from './sentence';
-import { TurnedBolt } from './TurnedBolt';
-import { useJob } from './useJob';
-import { VerdictStrip } from './VerdictStrip';
-import { Visit } from './Visit';
+import { drawnFrom, drawnRemedy, type DrawnAntenna, quantitiesOf, statesOf } from '../draw/drawn.ts';
+import { MountDrawing } from '../draw/MountDrawing.tsx';
+import { Button } from '../parts/Button.tsx';
+import { addEntry } from '../store/index.ts';
+import type { Antenna, LoggedEntry, Phase, PlannedMount, Quantity, Reading, States } from '../types.ts';
+import { decimalsFor, figure, shortest } from '../words/figures.ts';
+import { t } from '../words/words.ts';
+import { DeskRemark } from './DeskRemark.tsx';
+import { Gone } from './Gone.tsx';
+import { useJudged } from './judge.ts';
+import { lastTurn, standing } from './log.ts';
+import { axes, type Axis, directedOf, saidReading, wayName } from './manner.ts';
+import { type Action, nextActions } from './nextAction.ts';
+import { type Notice, takeNotice } from './notice.ts';
+import { Page } from './Page.tsx';
+import { go, hrefOf, type MountStep, phaseOf } from './route.ts';
+import { mirrorFact } from './sentence.ts';
+import { TurnedBolt } from './TurnedBolt.tsx';
+import { useJob } from './useJob.ts';
+import { VerdictStrip } from './VerdictStrip.tsx';
+import { Visit } from './Visit.tsx';
 
 export function Mount({ job: id, mount: mountId, step }: { job: string; mount: string; step: MountStep }) {
   const open = useJob(id);
@@ -127,7 +127,7 @@ export function Mount({ job: id, mount: mountId, step }: { job: string; mount: s
 
 /** The drawing takes what the head and the dock leave of the screen, so that it is seen whole with its verdict. */
 function useDrawingHeight(): number {
-  const fit = () => Math.min(400, Math.max(230, innerHeight - 430));
+  const fit = () => Math.min(400, Math.max(230, innerHeight - 460));
   const [height, setHeight] = useState(fit);
   useEffect(() => {
     const follow = () => setHeight(fit());
@@ -183,7 +183,7 @@ interface ScheduleProps {
   hrefOfReading: (quantity: Quantity) => string;
 }
 
-type PlacedDoubts = NonNullable<import('../types').Geometry['antennas'][number]['as_left']>;
+type PlacedDoubts = NonNullable<import('../types.ts').Geometry['antennas'][number]['as_left']>;
 
 /** One antenna's readings, a line each: a line is a link to entering it. */
 function Schedule(props: ScheduleProps) {
@@ -201,8 +201,9 @@ function Schedule(props: ScheduleProps) {
           const value = count > 0 ? valueOf(quantity, antenna, drawn, props.doubts) : null;
           return (
             <li key={quantity}>
-              <a href={hrefOfReading(quantity)} class={`schedule-row${off ? ' off' : ''}${value ? '' : ' unread'}`} aria-label={rowLabel(antenna.id, quantity, value)}>
+              <a href={hrefOfReading(quantity)} class={`schedule-row${off ? ' off' : ''}${value ? '' : ' unread'}`}>
                 <QuantitySign quantity={quantity} />
+                <span class="spoken">{t('mount.row', { antenna: antenna.id })}</span>
                 <span class="what">
                   <span class="name">{t(`quantity.${quantity}`)}</span>
                   <span class="quiet figure">
@@ -260,11 +261,6 @@ function valueOf(quantity: Quantity, antenna: Antenna, drawn: DrawnAntenna | und
 
 function along(place: DrawnAntenna['placed'], axis: Axis): number {
   return axis === 'right' ? place.right_mm : axis === 'up' ? place.up_mm : place.forward_mm;
-}
-
-function rowLabel(antenna: string, quantity: Quantity, value: ShownValue | null): string {
-  const what = t('mount.row', { antenna, quantity: t(`quantity.${quantity}`) });
-  return value ? `${what}, ${value.number} ${value.way} ${value.u}` : `${what}, ${t('reading.none')}`;
 }
 
 /** How each is turned, drawn: about the line of sight, up and down, about the mast, along the tape. */

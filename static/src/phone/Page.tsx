@@ -1,12 +1,13 @@
-// The frame of every page: title block, what goes wrong with the store, content, the caution at the foot, and what stays
-// in thumb's reach.
+// The frame of every page: a sheet that moves under the thumb (title block, what goes wrong with the store, content, the
+// caution at the foot), and below it what stays. The dock stands beside the sheet, not over it: nothing is ever hidden
+// behind it, no field and no focus.
 import type { ComponentChildren } from 'preact';
-import { Button } from '../parts/Button';
-import { Message } from '../parts/Message';
-import { TitleBlock } from '../parts/TitleBlock';
-import { storeHealth, useWatched } from '../store';
-import { status } from '../sync';
-import { t } from '../words/words';
+import { Button } from '../parts/Button.tsx';
+import { Message } from '../parts/Message.tsx';
+import { TitleBlock } from '../parts/TitleBlock.tsx';
+import { storeHealth, useWatched } from '../store/index.ts';
+import { status } from '../sync/index.ts';
+import { t } from '../words/words.ts';
 
 export interface PageProps {
   title: string;
@@ -25,12 +26,18 @@ export interface PageProps {
 export function Page(props: PageProps) {
   return (
     <div class={`page${props.kind ? ` ${props.kind}` : ''}`}>
-      <TitleBlock title={props.title} under={props.under} backHref={props.backHref} aside={props.statusless ? undefined : <Standing />} />
-      {props.head}
-      <StoreTrouble />
-      <main class="content">{props.children}</main>
-      <footer class="foot-caution">{t('foot.caution')}</footer>
-      {props.dock && <div class="dock">{props.dock}</div>}
+      <div class="sheet">
+        <TitleBlock title={props.title} under={props.under} backHref={props.backHref} aside={props.statusless ? undefined : <Standing />} />
+        {props.head}
+        <StoreTrouble />
+        <main class="content">{props.children}</main>
+        <footer class="foot-caution">{t('foot.caution')}</footer>
+      </div>
+      {props.dock && (
+        <section class="dock" aria-label={t('dock.name')}>
+          {props.dock}
+        </section>
+      )}
     </div>
   );
 }

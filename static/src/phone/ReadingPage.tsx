@@ -1,28 +1,28 @@
 // Entering one reading: value, its doubt, which way, read with what. Keys for a glove, plan and last value in sight, what
 // was typed kept at every stroke. Nothing typed is ever thrown away because it is wrong.
 import { useEffect, useMemo, useRef, useState } from 'preact/hooks';
-import { statesOf, quantitiesOf } from '../draw/drawn';
-import { Button } from '../parts/Button';
-import { Choice } from '../parts/Choice';
-import { Keypad } from '../parts/Keypad';
-import { Message } from '../parts/Message';
-import { NumberEntry } from '../parts/NumberEntry';
-import { addEntry, getDraft, localTime, setDraft, useWatched } from '../store';
-import { session } from '../sync';
-import type { Antenna, LoggedEntry, Phase, PlannedMount, Quantity, Reading, States } from '../types';
-import { figure, shortest } from '../words/figures';
-import { when } from '../words/when';
-import { t } from '../words/words';
-import { TurnedBolt } from './TurnedBolt';
-import { blank, check, type Draft, farFromPlan, type FieldName, wayOf } from './entry';
-import { Gone } from './Gone';
-import { lastTurn, saidOf, type Said, standing } from './log';
-import { axes, type Axis, datumOf, type Directed, directedOf, methods, saidReading, wayName } from './manner';
-import { leaveNotice } from './notice';
-import { Page } from './Page';
-import { go, hrefOf, type MountStep, phaseOf } from './route';
-import { methodName, unitSign } from './sentence';
-import { type OpenJob, useJob } from './useJob';
+import { statesOf, quantitiesOf } from '../draw/drawn.ts';
+import { Button } from '../parts/Button.tsx';
+import { Choice } from '../parts/Choice.tsx';
+import { Keypad } from '../parts/Keypad.tsx';
+import { Message } from '../parts/Message.tsx';
+import { NumberEntry } from '../parts/NumberEntry.tsx';
+import { addEntry, getDraft, localTime, setDraft, useWatched } from '../store/index.ts';
+import { session } from '../sync/index.ts';
+import type { Antenna, LoggedEntry, Phase, PlannedMount, Quantity, Reading, States } from '../types.ts';
+import { figure, shortest } from '../words/figures.ts';
+import { when } from '../words/when.ts';
+import { t } from '../words/words.ts';
+import { TurnedBolt } from './TurnedBolt.tsx';
+import { blank, check, type Draft, farFromPlan, type FieldName, wayOf } from './entry.ts';
+import { Gone } from './Gone.tsx';
+import { lastTurn, saidOf, type Said, standing } from './log.ts';
+import { axes, type Axis, datumOf, type Directed, directedOf, methods, saidReading, wayName } from './manner.ts';
+import { leaveNotice } from './notice.ts';
+import { Page } from './Page.tsx';
+import { go, hrefOf, type MountStep, phaseOf } from './route.ts';
+import { methodName, unitSign } from './sentence.ts';
+import { type OpenJob, useJob } from './useJob.ts';
 
 interface Address {
   job: string;

@@ -1,12 +1,12 @@
 // Signing in, once, in coverage; or taking up an invitation.
 import { useState } from 'preact/hooks';
-import { Button } from '../parts/Button';
-import { Message } from '../parts/Message';
-import { acceptInvitation, NoAnswer, ServerProblem, session, signIn } from '../sync';
-import { useWatched } from '../store';
-import { t } from '../words/words';
-import { Page } from './Page';
-import { go } from './route';
+import { Button } from '../parts/Button.tsx';
+import { Message } from '../parts/Message.tsx';
+import { acceptInvitation, NoAnswer, ServerProblem, session, signIn } from '../sync/index.ts';
+import { useWatched } from '../store/index.ts';
+import { t } from '../words/words.ts';
+import { Page } from './Page.tsx';
+import { go } from './route.ts';
 
 /** Shortest passphrase that the server takes. */
 const shortestPassphrase = 8;

@@ -1,11 +1,11 @@
 // "I turned this bolt": what was read as left before it counts no more. It cannot be taken back, so it asks once more,
 // in place.
 import { useState } from 'preact/hooks';
-import { Button } from '../parts/Button';
-import { Message } from '../parts/Message';
-import { addEntry } from '../store';
-import type { Quantity } from '../types';
-import { t } from '../words/words';
+import { Button } from '../parts/Button.tsx';
+import { Message } from '../parts/Message.tsx';
+import { addEntry } from '../store/index.ts';
+import type { Quantity } from '../types.ts';
+import { t } from '../words/words.ts';
 
 export interface TurnedBoltProps {
   job: string;

@@ -1,19 +1,19 @@
 // The verdict opened: value, doubt and limit of each limit on its line, what helps, what decides, what each means, and
 // under which conditions all this holds.
-import { LimitLine } from '../draw/LimitLine';
-import { limitTitle } from '../draw/limit';
-import { Square, toneOf } from '../draw/Square';
-import { turnSentence } from '../draw/turn';
-import { Message } from '../parts/Message';
-import type { LimitName, Sheet } from '../types';
-import { percent } from '../words/figures';
-import { t } from '../words/words';
-import { Gone } from './Gone';
-import { useJudged } from './judge';
-import { Page } from './Page';
-import { hrefOf, type MountStep, phaseOf } from './route';
-import { doubt, mirrorFact, reasonOf, remedyGain, unitSign } from './sentence';
-import { useJob } from './useJob';
+import { LimitLine } from '../draw/LimitLine.tsx';
+import { limitTitle } from '../draw/limit.ts';
+import { Square, toneOf } from '../draw/Square.tsx';
+import { turnSentence } from '../draw/turn.ts';
+import { Message } from '../parts/Message.tsx';
+import type { LimitName, Sheet } from '../types.ts';
+import { percent } from '../words/figures.ts';
+import { t } from '../words/words.ts';
+import { Gone } from './Gone.tsx';
+import { useJudged } from './judge.ts';
+import { Page } from './Page.tsx';
+import { hrefOf, type MountStep, phaseOf } from './route.ts';
+import { doubt, mirrorFact, reasonOf, remedyGain, unitSign } from './sentence.ts';
+import { useJob } from './useJob.ts';
 
 export function VerdictPage({ job: id, mount: mountId, step }: { job: string; mount: string; step: MountStep }) {
   const open = useJob(id);
@@ -37,14 +37,14 @@ export function VerdictPage({ job: id, mount: mountId, step }: { job: string; mo
       under={under}
       backHref={back}
       head={
-        <div class={`strip opened ${toneOf(verdict.word)}`} aria-busy={thinking} data-word={verdict.word}>
+        <section class={`strip opened ${toneOf(verdict.word)}`} aria-label={t('verdict.title')} aria-busy={thinking} data-word={verdict.word}>
           <span class="strip-head">
             <Square word={verdict.word} size={44} />
             <strong class="strip-word">{t(`word.${verdict.word}`)}</strong>
           </span>
           <span class="reason">{reasonOf(verdict, sheet)}</span>
           <span>{t(`phase.${verdict.judged}`)}</span>
-        </div>
+        </section>
       }
     >
       <section class="section stack" aria-labelledby="limits-title">

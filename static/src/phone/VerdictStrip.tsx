@@ -1,11 +1,11 @@
 // The verdict in thumb's reach: mark and word, the figure that decides, the reason in one sentence, the turn that helps
 // most with what it buys. The whole strip opens the verdict.
-import type { CalcProblem } from '../calc/client';
-import { limitDoubted, limitValue } from '../draw/limit';
-import { Square, toneOf } from '../draw/Square';
-import type { Phase, Quantity, Sheet, Verdict } from '../types';
-import { t } from '../words/words';
-import { headlineOf, helpful, reasonOf, remedyWithGain } from './sentence';
+import type { CalcProblem } from '../calc/client.ts';
+import { limitDoubted, limitValue } from '../draw/limit.ts';
+import { Square, toneOf } from '../draw/Square.tsx';
+import type { LimitOutcome, Phase, Quantity, Sheet, Verdict } from '../types.ts';
+import { t } from '../words/words.ts';
+import { headlineOf, helpful, reasonOf, remedyWithGain } from './sentence.ts';
 
 export interface VerdictStripProps {
   verdict: Verdict | null;
@@ -44,7 +44,7 @@ export function VerdictStrip({ verdict, sheet, problem, thinking, phase, href, b
       </a>
     );
   }
-  const headline = headlineOf(verdict);
+  const figures = figuresOf(headlineOf(verdict));
   const best = helpful(verdict);
   const reason = reasonOf(verdict, sheet);
   return (
@@ -53,18 +53,18 @@ export function VerdictStrip({ verdict, sheet, problem, thinking, phase, href, b
         <span class="strip-head">
           <Square word={verdict.word} size={38} />
           <strong class="strip-word">{t(`word.${verdict.word}`)}</strong>
-          {headline && headline.value !== null && (
+          {figures && verdict.word === 'no-go' && (
             <span class="strip-figure">
-              <strong class="figure">{limitDoubted(headline.name, headline.value, headline.u)}</strong>
-              <span class="figure">
-                {t(headline.sense === 'at least' ? 'strip.needs' : 'strip.allows', { limit: limitValue(headline.name, headline.limit) })}
-              </span>
+              <strong class="figure">{figures.value}</strong>
+              <span class="figure">{figures.bound}</span>
             </span>
           )}
         </span>
+        {figures && verdict.word === 'measure again' && <strong class="figure">{t('strip.figure', figures)}</strong>}
         <span class="reason">
           {reason} <u>{t('strip.open')}</u>
         </span>
+        {figures && verdict.word === 'go' && <span class="nearest figure">{t('strip.nearest', figures)}</span>}
         {best && <span class="then">{remedyWithGain(best)}</span>}
       </a>
       <p class="spoken" aria-live="polite">
@@ -72,4 +72,14 @@ export function VerdictStrip({ verdict, sheet, problem, thinking, phase, href, b
       </p>
     </>
   );
+}
+
+/** The figure of the limit that is nearest to decide, in the words of the strip. */
+function figuresOf(headline: LimitOutcome | null): { brief: string; value: string; bound: string } | null {
+  if (!headline || headline.value === null) return null;
+  return {
+    brief: t(`brief.${headline.name}`),
+    value: limitDoubted(headline.name, headline.value, headline.u),
+    bound: t(headline.sense === 'at least' ? 'limit.at-least' : 'limit.at-most', { limit: limitValue(headline.name, headline.limit) }),
+  };
 }

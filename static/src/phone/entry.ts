@@ -1,10 +1,10 @@
 // What was typed on the reading page, and whether it can be a reading. The typed text is kept as typed; a direction is
 // chosen in words, a sign in front of an angle is taken as the direction it stands for.
-import type { Quantity, Reading } from '../types';
-import { shortest } from '../words/figures';
-import { t } from '../words/words';
-import { readNumber } from '../parts/number';
-import { axes, type Axis } from './manner';
+import type { Quantity, Reading } from '../types.ts';
+import { shortest } from '../words/figures.ts';
+import { t } from '../words/words.ts';
+import { readNumber } from '../parts/number.ts';
+import { axes, type Axis } from './manner.ts';
 
 export type Way = 'more' | 'less';
 export type FieldName = 'value' | Axis;

@@ -1,11 +1,11 @@
 // The verdict on a mount as one step of the visit sees it, worked out anew at each change of the log: mount.fold lays
 // the readings over the sheet, mount.verdict judges what came out. Both are calc's; nothing is judged here.
 import { useEffect, useState } from 'preact/hooks';
-import { CalcProblem, reckon } from '../calc/client';
-import { quantities, readingsIn, statesOf } from '../draw/drawn';
-import type { Antenna, LoggedEntry, PlannedMount, Quantity, Reading, Sheet, States, Verdict } from '../types';
-import { forFold, lastTurn } from './log';
-import type { MountStep } from './route';
+import { CalcProblem, reckon } from '../calc/client.ts';
+import { quantities, readingsIn, statesOf } from '../draw/drawn.ts';
+import type { Antenna, LoggedEntry, PlannedMount, Quantity, Reading, Sheet, States, Verdict } from '../types.ts';
+import { forFold, lastTurn } from './log.ts';
+import type { MountStep } from './route.ts';
 
 export interface Judged {
   /** Folded, and cut to what the step looks at. Null until the first answer. */

@@ -1,5 +1,5 @@
 // What the log of one job says, as far as the views ask: confirmed cautions, readings, turned bolts, notes.
-import type { EntryOf, Kind, LoggedEntry, Phase, Quantity } from '../types';
+import type { EntryOf, Kind, LoggedEntry, Phase, Quantity } from '../types.ts';
 
 export interface Said<K extends Kind> {
   entry: EntryOf<K>;

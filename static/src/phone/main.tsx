@@ -2,21 +2,21 @@
 import { render } from 'preact';
 import { useEffect, useRef } from 'preact/hooks';
 import '../../style/phone.css';
-import { warmUp } from '../calc/client';
-import { useWatched } from '../store';
-import { session, start } from '../sync';
-import { t } from '../words/words';
-import { Apart } from './Apart';
-import { Before } from './Before';
-import { HandIn } from './HandIn';
-import { JobPage } from './JobPage';
-import { Jobs } from './Jobs';
-import { Mount } from './Mount';
-import { ReadingPage } from './ReadingPage';
-import { useRoute } from './route';
-import { SignIn } from './SignIn';
-import { applyTheme, currentTheme } from './theme';
-import { VerdictPage } from './VerdictPage';
+import { warmUp } from '../calc/client.ts';
+import { useWatched } from '../store/index.ts';
+import { session, start } from '../sync/index.ts';
+import { t } from '../words/words.ts';
+import { Apart } from './Apart.tsx';
+import { Before } from './Before.tsx';
+import { HandIn } from './HandIn.tsx';
+import { JobPage } from './JobPage.tsx';
+import { Jobs } from './Jobs.tsx';
+import { Mount } from './Mount.tsx';
+import { ReadingPage } from './ReadingPage.tsx';
+import { useRoute } from './route.ts';
+import { SignIn } from './SignIn.tsx';
+import { applyTheme, currentTheme } from './theme.ts';
+import { VerdictPage } from './VerdictPage.tsx';
 
 function Phone() {
   const who = useWatched(session);
@@ -28,7 +28,6 @@ function Phone() {
       first.current = false; // the browser puts the focus where it belongs at the first page
       return;
     }
-    scrollTo(0, 0);
     // A page with a field puts the focus there by itself.
     if (route.page !== 'reading') document.querySelector<HTMLElement>('h1')?.focus();
   }, [key]);

@@ -1,8 +1,8 @@
 // What readings are taken with, what doubt is usual for it, and how each quantity is typed: size and direction, as a
 // level, a compass and a tape give them, instead of signs.
-import type { Antenna, Quantity, Reading, Sheet } from '../types';
-import { shortest } from '../words/figures';
-import { t } from '../words/words';
+import type { Antenna, Quantity, Reading, Sheet } from '../types.ts';
+import { shortest } from '../words/figures.ts';
+import { t } from '../words/words.ts';
 
 export interface Method {
   /** As it goes into the reading. */

@@ -1,8 +1,8 @@
 // What to do next on a mount: the first is the one big button of the page, a second may stand beside it.
-import type { LoggedEntry, PlannedMount, Quantity, Verdict } from '../types';
-import type { MountStep } from './route';
-import { helpful } from './sentence';
-import { turnedUnread, unread, type Wanted } from './steps';
+import type { LoggedEntry, PlannedMount, Quantity, Verdict } from '../types.ts';
+import type { MountStep } from './route.ts';
+import { helpful } from './sentence.ts';
+import { turnedUnread, unread, type Wanted } from './steps.ts';
 
 export type Action =
   | { do: 'measure'; antenna: string; quantity: Quantity; again: boolean }

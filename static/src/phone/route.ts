@@ -1,6 +1,6 @@
 // Pages of the phone by the part of the address behind "#". Back leads where the phone's own back leads.
 import { useEffect, useState } from 'preact/hooks';
-import type { Phase, Quantity } from '../types';
+import type { Phase, Quantity } from '../types.ts';
 
 /** The steps of the path that a mount is worked through in. Adjusting and as left both take readings as left. */
 export type MountStep = 'as-found' | 'adjust' | 'as-left';

@@ -1,10 +1,10 @@
 // Sentences made from the codes and numbers of a verdict, so that every language makes its own.
-import { limitDoubted, limitTitle, limitValue } from '../draw/limit';
-import { turnSentence } from '../draw/turn';
-import type { LimitOutcome, Quantity, Remedy, Sheet, Verdict } from '../types';
-import { figure, percent, shortest } from '../words/figures';
-import { t } from '../words/words';
-import { readingsIn, statesOf } from '../draw/drawn';
+import { limitDoubted, limitTitle, limitValue } from '../draw/limit.ts';
+import { turnSentence } from '../draw/turn.ts';
+import type { LimitOutcome, Quantity, Remedy, Sheet, Verdict } from '../types.ts';
+import { figure, percent, shortest } from '../words/figures.ts';
+import { t } from '../words/words.ts';
+import { readingsIn, statesOf } from '../draw/drawn.ts';
 
 /** The best turn, where it helps: always while the word is no-go, else only if the word gets better by it. */
 export function helpful(verdict: Verdict): Remedy | null {
@@ -22,10 +22,17 @@ export function headlineOf(verdict: Verdict): LimitOutcome | null {
   // What was not read is taken as hung by eye: figures made of that would only look like readings.
   if (verdict.reason.code === 'missing_reading') return null;
   const judged = verdict.limits.filter((l) => l.applicable && l.value !== null);
+  if (verdict.word === 'go') return nearest(judged);
   const named = judged.find((l) => l.name === verdict.reason.limit);
   if (named) return named;
   if (verdict.reason.code === 'doubt' && verdict.reason.limit !== null) return null; // its limit has no figure
-  return [...judged].sort((a, b) => (a.probability ?? 1) - (b.probability ?? 1))[0] ?? null;
+  return nearest(judged);
+}
+
+/** Least sure first; among the equally sure, by how many doubts away the limit is. */
+function nearest(judged: LimitOutcome[]): LimitOutcome | null {
+  const doubts = (l: LimitOutcome) => Math.abs(l.margin ?? 0) / (l.u && l.u > 0 ? l.u : 1e-9);
+  return [...judged].sort((a, b) => (a.probability ?? 1) - (b.probability ?? 1) || doubts(a) - doubts(b))[0] ?? null;
 }
 
 export function reasonOf(verdict: Verdict, sheet: Sheet): string {

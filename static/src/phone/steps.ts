@@ -1,9 +1,9 @@
 // How far a visit is: which readings a state still wants, which steps of the path are done, what is open at hand-in.
-import { quantitiesOf } from '../draw/drawn';
-import type { LoggedEntry, Phase, PhoneJob, PlannedMount, Quantity, Sheet } from '../types';
-import { cautions, type Caution } from '../words/cautions';
-import { lastTurn, saidOf, standing } from './log';
-import { hrefOf, type MountStep, mountSteps } from './route';
+import { quantitiesOf } from '../draw/drawn.ts';
+import type { LoggedEntry, Phase, PhoneJob, PlannedMount, Quantity, Sheet } from '../types.ts';
+import { cautions, type Caution } from '../words/cautions.ts';
+import { lastTurn, saidOf, standing } from './log.ts';
+import { hrefOf, type MountStep, mountSteps } from './route.ts';
 
 export interface Wanted {
   antenna: string;

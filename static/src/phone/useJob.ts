@@ -1,6 +1,6 @@
 // A job with its log, drawn again at each change of the store. undefined: not looked up yet. null: not on this phone.
-import { entriesOf, job, useStored } from '../store';
-import type { LoggedEntry, PhoneJob } from '../types';
+import { entriesOf, job, useStored } from '../store/index.ts';
+import type { LoggedEntry, PhoneJob } from '../types.ts';
 
 export interface OpenJob {
   job: PhoneJob;

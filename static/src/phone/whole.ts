@@ -1,8 +1,8 @@
 // The verdict on each mount of a job as a whole, on this phone, from what this phone knows: the server's may be older.
 import { useEffect, useState } from 'preact/hooks';
-import type { PlannedMount, Sheet, Verdict } from '../types';
-import { judge } from './judge';
-import type { OpenJob } from './useJob';
+import type { PlannedMount, Sheet, Verdict } from '../types.ts';
+import { judge } from './judge.ts';
+import type { OpenJob } from './useJob.ts';
 
 export interface MountVerdict {
   mount: PlannedMount;

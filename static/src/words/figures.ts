@@ -47,9 +47,9 @@ export function withDoubt(value: number, u: number | null | undefined, fallback 
   return `${figure(value, decimals)} ± ${doubt}`;
 }
 
-/** Probability as whole percent, never rounded to certainty. */
+/** Probability as whole percent, never said to be certainty: it comes from a finite count of draws. Cut, so that 94.9 does not read as 95. */
 export function percent(p: number): string {
-  if (p > 0.995 && p < 1) return '> 99';
-  if (p > 0 && p < 0.005) return '< 1';
-  return String(Math.round(p * 100));
+  if (p >= 0.99) return '> 99';
+  if (p < 0.01) return '< 1';
+  return String(Math.floor(p * 100));
 }

@@ -1,5 +1,5 @@
 // Times as people of the trade say them. The clock of the place counts, so a time with its offset is read as written.
-import { language } from './words';
+import { language } from './words.ts';
 
 /** "09:12" of an RFC 3339 time, by the clock of the place where it was written. */
 export function clock(at: string): string {

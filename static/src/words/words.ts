@@ -1,7 +1,7 @@
 // The page's language and its texts. One language so far; another is one more file of the same keys.
-import { en } from './en';
-import { setDecimalSign } from './figures';
-import { sayer } from './say';
+import { en } from './en.ts';
+import { setDecimalSign } from './figures.ts';
+import { sayer } from './say.ts';
 
 export const language = 'en';
 

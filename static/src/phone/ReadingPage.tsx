@@ -23,6 +23,8 @@ import { Page } from './Page.tsx';
 import { go, hrefOf, type MountStep, phaseOf } from './route.ts';
 import { methodName, unitSign } from './sentence.ts';
 import { type OpenJob, useJob } from './useJob.ts';
+import { BearingFrom } from './aim/BearingFrom.tsx';
+import { TwoFaces } from './aim/TwoFaces.tsx';
 
 interface Address {
   job: string;
@@ -248,6 +250,13 @@ function Entering(props: EnteringProps) {
       <p class="quiet">{t('reading.usual', { u: usualDoubt(quantity, draft.method) })}</p>
       {quantity === 'position' && <p>{t('reading.middles')}</p>}
       {quantity === 'azimuth' && <p>{t('reading.north')}</p>}
+      {quantity === 'azimuth' && <BearingFrom job={props.job} mount={props.mount} compass={draft.method === 'compass'} />}
+      {(quantity === 'skew' || quantity === 'tilt') && (
+        <TwoFaces
+          draftKey={draftKey}
+          onTake={(value, u) => change({ ...draft, u: shortest(u, 2), fields: { ...draft.fields, value: { text: shortest(Math.abs(value), 2), way: value < 0 ? 'less' : 'more' } } })}
+        />
+      )}
       {body.level_datum && (quantity === 'skew' || quantity === 'tilt') && <p>{t('reading.datum-flat', { surface: body.level_datum.surface, antenna: body.id })}</p>}
       {quantity === 'position' && !draft.more && (
         <Button wide onPress={() => change({ ...draft, more: true })}>

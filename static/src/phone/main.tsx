@@ -2,6 +2,7 @@
 import { render } from 'preact';
 import { useEffect, useRef } from 'preact/hooks';
 import '../../style/phone.css';
+import { AimPages } from './aim/AimPages.tsx';
 import { warmUp } from '../calc/client.ts';
 import { useWatched } from '../store/index.ts';
 import { session, start } from '../sync/index.ts';
@@ -52,6 +53,8 @@ function Phone() {
       return <VerdictPage key={key} {...route} />;
     case 'reading':
       return <ReadingPage key={key} {...route} />;
+    default:
+      return <AimPages key={key} route={route} />;
   }
 }
 

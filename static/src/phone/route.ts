@@ -20,7 +20,17 @@ export type Route =
   | { page: 'hand-in'; job: string }
   | { page: 'mount'; job: string; mount: string; step: MountStep }
   | { page: 'verdict'; job: string; mount: string; step: MountStep }
-  | { page: 'reading'; job: string; mount: string; step: MountStep; antenna: string; quantity: Quantity };
+  | { page: 'reading'; job: string; mount: string; step: MountStep; antenna: string; quantity: Quantity }
+  | AimRoute;
+
+/** Aim, what belongs to it, and radio figures: all of one mount. */
+export interface AimRoute {
+  page: (typeof aimPages)[number];
+  job: string;
+  mount: string;
+}
+
+export const aimPages = ['aim', 'sun', 'landmark', 'compass', 'path', 'ground', 'lean', 'peak', 'figures', 'radio-near', 'radio-far'] as const;
 
 const quantityNames: readonly string[] = ['skew', 'tilt', 'azimuth', 'position'];
 
@@ -44,6 +54,8 @@ export function hrefOf(route: Route): string {
       return path('job', route.job, 'mount', route.mount, route.step, 'verdict');
     case 'reading':
       return path('job', route.job, 'mount', route.mount, route.step, 'reading', route.antenna, route.quantity);
+    default:
+      return path('job', route.job, 'mount', route.mount, route.page);
   }
 }
 
@@ -55,6 +67,8 @@ export function routeOf(hash: string): Route {
   if (first === 'apart') return { page: 'apart' };
   if (first !== 'job' || !job) return { page: 'jobs' };
   if (third === 'before' || third === 'hand-in') return { page: third, job };
+  const aim = aimPages.find((page) => page === step);
+  if (third === 'mount' && mount && aim) return { page: aim, job, mount };
   const known = mountSteps.find((s) => s === step);
   if (third !== 'mount' || !mount || !known) return { page: 'job', job };
   if (sixth === 'verdict') return { page: 'verdict', job, mount, step: known };

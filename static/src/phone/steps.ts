@@ -4,6 +4,7 @@ import type { LoggedEntry, Phase, PhoneJob, PlannedMount, Quantity, Sheet } from
 import { cautions, type Caution } from '../words/cautions.ts';
 import { lastTurn, saidOf, standing } from './log.ts';
 import { hrefOf, type MountStep, mountSteps } from './route.ts';
+import { aimDone, figuresDone } from './aim/done.ts';
 
 export interface Wanted {
   antenna: string;
@@ -47,7 +48,7 @@ function stepDone(log: readonly LoggedEntry[], mount: PlannedMount, step: MountS
 }
 
 export interface Step {
-  key: 'before' | MountStep | 'hand-in';
+  key: 'before' | MountStep | 'aim' | 'figures' | 'hand-in';
   href: string;
   done: boolean;
 }
@@ -63,6 +64,11 @@ export function stepsOf(job: PhoneJob, log: readonly LoggedEntry[], mountId: str
     const target = open ?? asked[0];
     if (!target) continue;
     steps.push({ key: step, href: hrefOf({ page: 'mount', job: id, mount: target.id, step }), done: open === undefined });
+    if (step !== 'adjust') continue;
+    for (const [page, isDone] of [['aim', aimDone], ['figures', figuresDone]] as const) {
+      const unaimed = asked.find((m) => !isDone(log, m));
+      steps.push({ key: page, href: hrefOf({ page, job: id, mount: (unaimed ?? target).id }), done: unaimed === undefined });
+    }
   }
   const handedIn = job.stage === 'handed in' || job.stage === 'signed off';
   steps.push({ key: 'hand-in', href: hrefOf({ page: 'hand-in', job: id }), done: handedIn });

@@ -202,6 +202,8 @@ export const en = {
   'step.before': 'before',
   'step.as-found': 'as found',
   'step.adjust': 'adjust',
+  'step.aim': 'aim',
+  'step.figures': 'figures',
   'step.as-left': 'as left',
   'step.hand-in': 'hand in',
 

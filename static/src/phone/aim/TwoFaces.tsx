@@ -1,0 +1,82 @@
+// Tilt or skew by reversal: the level or phone is read on the face, turned half round where it lies, and read again. The
+// bias of the instrument falls out; the mean of each face's readings goes in.
+import { useState } from 'preact/hooks';
+import type { TwoFace } from '../../aim/answers.ts';
+import { Facts } from '../../aim/Facts.tsx';
+import { useReckoned } from '../../aim/useReckoned.ts';
+import { Button } from '../../parts/Button.tsx';
+import { Message } from '../../parts/Message.tsx';
+import { say } from '../../words/aim.ts';
+import { figure } from '../../words/figures.ts';
+import { errorIn, Field, type Form, numberIn, told, useForm } from './form.tsx';
+import { ask } from './useAim.ts';
+
+export interface TwoFacesProps {
+  /** Keeps what is being typed apart from other readings. */
+  draftKey: string;
+  /** Takes value and standard uncertainty, degrees, into the reading. */
+  onTake: (value: number, u: number) => void;
+}
+
+const readings = ['1', '2', '3'] as const;
+
+export function TwoFaces({ draftKey, onTake }: TwoFacesProps) {
+  const [open, setOpen] = useState(false);
+  const form = useForm(`two faces ${draftKey}`, {}, 'a1');
+  return (
+    <details class="more-figures" onToggle={(event) => setOpen(event.currentTarget.open)}>
+      <summary>{say('faces.title')}</summary>
+      {open && form && <Faces form={form} onTake={onTake} />}
+    </details>
+  );
+}
+
+interface Face {
+  mean: number;
+  spread: number;
+  count: number;
+}
+
+/** Mean and standard deviation of what was read with one face; the doubt of the answer is calc's to make of them. */
+function faceOf(form: Form, face: 'a' | 'b'): Face | null {
+  const values = readings.map((n) => numberIn(form, `${face}${n}`)).filter((x): x is number => x !== null);
+  if (values.length === 0) return null;
+  const mean = values.reduce((sum, x) => sum + x, 0) / values.length;
+  const squares = values.reduce((sum, x) => sum + (x - mean) ** 2, 0);
+  return { mean, spread: values.length > 1 ? Math.sqrt(squares / (values.length - 1)) : 0, count: values.length };
+}
+
+function Faces({ form, onTake }: { form: Form; onTake: TwoFacesProps['onTake'] }) {
+  const a = faceOf(form, 'a');
+  const b = faceOf(form, 'b');
+  const asked = a && b ? { face_a_deg: a.mean, face_b_deg: b.mean, spread_a_deg: a.spread, spread_b_deg: b.spread, count_a: a.count, count_b: b.count } : null;
+  const found = useReckoned<TwoFace>(ask, 'tilt.twoface', asked);
+  const unread = (['a', 'b'] as const).some((face) => readings.some((n) => errorIn(form, `${face}${n}`, true) !== null));
+  return (
+    <div class="stack">
+      <p>{say('faces.how')}</p>
+      {(['a', 'b'] as const).map((face) => (
+        <fieldset class="stack" key={face}>
+          <legend class="field-label">{say(`faces.${face}`)}</legend>
+          {readings.map((n, i) => (
+            <Field key={n} form={form} name={`${face}${n}`} label={say('faces.reading', { n })} unit="°" optional={i > 0} problem={told(found.problem, `face_${face}_deg`)} />
+          ))}
+        </fieldset>
+      ))}
+      {found.answer && !unread && (
+        <>
+          <Facts
+            facts={[
+              { name: say('faces.answer'), value: `${figure(found.answer.tilt_deg, 2)}° ± ${figure(found.answer.u_deg, 2)}°` },
+              { name: say('faces.bias'), value: `${figure(found.answer.bias_deg, 2)}°` },
+            ]}
+          />
+          <Button wide onPress={() => found.answer && onTake(found.answer.tilt_deg, found.answer.u_deg)}>
+            {say('faces.take')}
+          </Button>
+        </>
+      )}
+      {found.problem && !/^face_/.test(found.problem.field) && <Message tone="wrong">{found.problem.message}</Message>}
+    </div>
+  );
+}

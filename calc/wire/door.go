@@ -35,6 +35,7 @@ func operations() []operation {
 		spacingOperations(),
 		aimOperations(),
 		peakOperations(),
+		faultOperations(),
 		streamOperations(),
 		streamsOperations(),
 		mountOperations(),

@@ -64,7 +64,7 @@ export function MountDrawing(props: MountDrawingProps) {
           />
         ))}
         {ghost &&
-          antennas.filter(differs).map((antenna) => <Ghost key={`ghost-${antenna.id}`} antenna={antenna} paper={paper} />)}
+          antennas.filter((antenna) => differs(antenna, paper.scale)).map((antenna) => <Ghost key={`ghost-${antenna.id}`} antenna={antenna} paper={paper} />)}
         {dimensions && (
           <Dimensions antennas={antennas} spacings={props.spacings ?? []} layout={layout} paper={paper} callout={callout} compact={compact ?? false} />
         )}
@@ -106,7 +106,7 @@ function marginsFor(antennas: DrawnAntenna[], layout: Layout, dimensions: boolea
   const letters = antennas.some((a) => a.shape === 'omni' || a.shape === 'point') ? 28 : 8;
   const labels = line + 6;
   const figures = across ? 2 * line + 22 : 0;
-  const over = callout === 'over' ? 58 : 0;
+  const over = callout === 'over' ? (letters > 8 ? 58 : 78) : 0; // a letter may have to stand outside its sheet
   const under = callout === 'under' ? 56 : 0;
   const swapped = callout === 'under' ? figures : 0;
   const room = callout === 'over' && layout !== 'one' ? 40 : 18;
@@ -135,13 +135,13 @@ function describeOne(antenna: DrawnAntenna): string {
   return parts.join(', ');
 }
 
-/** The plan shows as a ghost as soon as an eye could tell it from what was measured. */
-function differs(antenna: DrawnAntenna): boolean {
+/** The plan shows as a ghost as soon as an eye can tell it from what was measured; nearer it would only blur the ink. */
+function differs(antenna: DrawnAntenna, scale: number): boolean {
   const { placed, planned } = antenna;
-  return (
-    Math.abs(placed.skew_deg - planned.skew_deg) >= 0.5 ||
-    Math.hypot(placed.right_mm - planned.right_mm, placed.up_mm - planned.up_mm) >= 4
-  );
+  const arm = Math.hypot(antenna.width_mm, antenna.height_mm) / 2;
+  const turned = (Math.abs(placed.skew_deg - planned.skew_deg) * Math.PI * arm) / 180;
+  const moved = Math.hypot(placed.right_mm - planned.right_mm, placed.up_mm - planned.up_mm);
+  return Math.max(turned, moved) * scale >= 4;
 }
 
 // ---- Antennas ---------------------------------------------------------------------------------------------------
@@ -206,7 +206,7 @@ function Drawn(props: { antenna: DrawnAntenna; paper: Paper; selected: boolean; 
   const skew = read ? `${shortest(Math.abs(antenna.placed.skew_deg), 1)}°` : '';
   const letter = compact ? 16 : 22;
   const round = antenna.shape === 'dish' || antenna.shape === 'point';
-  const inside = antenna.shape !== 'omni' && w >= 34 && h / 2 - half >= letter + 10;
+  const inside = letterInside(antenna, scale, letter);
   const a = (antenna.placed.skew_deg * Math.PI) / 180;
   const cx = paper.x(antenna.placed.right_mm);
   const cy = paper.y(antenna.placed.up_mm);
@@ -238,6 +238,12 @@ function Drawn(props: { antenna: DrawnAntenna; paper: Paper; selected: boolean; 
       )}
     </g>
   );
+}
+
+/** Whether the letter fits between the head of the sheet and the polarization strokes. */
+function letterInside(antenna: DrawnAntenna, scale: number, letter: number): boolean {
+  if (antenna.shape === 'omni' || antenna.width_mm * scale < 34) return false;
+  return (antenna.height_mm * scale) / 2 - strokeHalf(antenna, scale) >= letter + (antenna.shape === 'dish' ? 26 : 10);
 }
 
 function Ghost({ antenna, paper }: { antenna: DrawnAntenna; paper: Paper }) {
@@ -357,6 +363,10 @@ function Dimensions(props: {
         const x1 = paper.x(from.placed.right_mm);
         const x2 = paper.x(to.placed.right_mm);
         const middle = (x1 + x2) / 2;
+        // The figure is the distance from middle to middle, so the line runs parallel to it.
+        const lean = (paper.y(to.placed.up_mm) - paper.y(from.placed.up_mm)) / 2;
+        const y1 = y - lean;
+        const y2 = y + lean;
         const long = `${millimetres(spacing)} \u00b7 ${waves(spacing)}`;
         // In the line where it fits, as on a drawing; else under it.
         const size = compact ? 15 : 18;
@@ -364,7 +374,7 @@ function Dimensions(props: {
         const fits = x2 - x1 >= inLine.length * size * 0.56 + 40;
         return (
           <g key={`${from.id}${to.id}`}>
-            <path class="dimension" d={`M${x1} ${y - 9} V${y + 9} M${x2} ${y - 9} V${y + 9} M${x1} ${y} H${x2}`} />
+            <path class="dimension" d={`M${x1} ${y1 - 9} V${y1 + 9} M${x2} ${y2 - 9} V${y2 + 9} M${x1} ${y1} L${x2} ${y2}`} />
             {fits ? (
               <text class="over in-line strong" x={middle} y={y} text-anchor="middle" dominant-baseline="central">
                 {inLine}
@@ -387,9 +397,12 @@ function Dimensions(props: {
       {upShown.map(({ from, to, spacing }) => {
         const y1 = paper.y(from.placed.up_mm);
         const y2 = paper.y(to.placed.up_mm);
+        const lean = (paper.x(to.placed.right_mm) - paper.x(from.placed.right_mm)) / 2;
+        const x1 = far - lean;
+        const x2 = far + lean;
         return (
           <g key={`${from.id}${to.id}`}>
-            <path class="dimension" d={`M${far - 9} ${y1} H${far + 9} M${far - 9} ${y2} H${far + 9} M${far} ${y1} V${y2}`} />
+            <path class="dimension" d={`M${x1 - 9} ${y1} H${x1 + 9} M${x2 - 9} ${y2} H${x2 + 9} M${x1} ${y1} L${x2} ${y2}`} />
             <text class="over strong" x={far + 8} y={(y1 + y2) / 2 - (compact ? 0 : line / 2)} dominant-baseline="central">
               {millimetres(spacing)}
             </text>
@@ -465,7 +478,7 @@ function Turn(props: { remedy: Remedy; callout: Callout; antennas: DrawnAntenna[
   const text = turnAmount(remedy);
   const halfText = text.length * size * 0.27;
   const tx = Math.min(paper.width - halfText - 2, Math.max(halfText + 2, cx));
-  const letter = antenna.shape === 'omni' || antenna.shape === 'point' ? 28 : 0;
+  const letter = letterInside(antenna, paper.scale, compact ? 16 : 22) ? 0 : 26;
   const under = callout === 'under';
   const y = under ? cy + half + line + 18 : cy - half - letter - 14;
   return (

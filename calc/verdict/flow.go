@@ -183,6 +183,14 @@ func (f *flow) exact(x []float64) []float64 {
 	return f.of(&r, f.planned.BitsPerSHz)
 }
 
+// accurate is the accurate response at x; the anchor stays where it is. For
+// geometries too far from it for nearby.
+func (f *flow) accurate(x []float64) []float64 {
+	f.place(x)
+	r := f.engine.Evaluate(f.near, f.far)
+	return f.of(&r, f.planned.BitsPerSHz)
+}
+
 // nearby is the quick response at x against the last anchor.
 func (f *flow) nearby(x []float64) []float64 {
 	f.place(x)

@@ -181,7 +181,7 @@ func (j *judge) bestMove(b *belief, x []float64, at int, q quantity, scale []flo
 			continue
 		}
 		y[at] = x[at] + d
-		if v := j.score(y, j.flow.nearby(y), scale); v > score {
+		if v := j.score(y, j.flow.accurate(y), scale); v > score {
 			by, score = d, v
 		}
 	}

@@ -30,17 +30,19 @@ type Tolerance struct {
 	Alone                         *float64 // ± with everything else as planned; nil: not limiting
 }
 
-// free is how far a quantity is tried before it is called not limiting.
-func (q quantity) free() float64 {
+// free is how far a quantity is tried before it is called not limiting: farther off
+// than any hand leaves it, and for places a wavelength, beyond which the phases
+// repeat.
+func (m *model) free(q quantity) float64 {
 	switch q {
 	case skew:
-		return math.Pi / 4
+		return 30 * degree
 	case tilt:
-		return math.Pi / 6
+		return 20 * degree
 	case azimuth:
-		return math.Pi / 2
+		return 45 * degree
 	}
-	return 1
+	return math.Max(m.sheet.Radio.WavelengthM(), 0.03)
 }
 
 // Tolerate finds the tolerances of a mount. Each tolerance alone is the largest
@@ -57,11 +59,10 @@ func Tolerate(s *sheet.Sheet) (*Tolerances, *codec.Problem) {
 	if p != nil {
 		return nil, p
 	}
-	x := append([]float64(nil), j.plan...)
-	start := j.run(j.asHung(far, x))
+	plan := j.asHung(far, j.plan)
+	start := j.run(plan)
 	out := &Tolerances{Probability: start.joint, PlanIsGo: start.joint >= Guard}
 	var at []int
-	var alone []float64
 	for i := range j.near {
 		for q := range quantities {
 			if q == azimuth && j.bodies[i].symmetric || !q.angular() && j.bodies[i].datum {
@@ -80,81 +81,136 @@ func Tolerate(s *sheet.Sheet) (*Tolerances, *codec.Problem) {
 		}
 		return out, nil
 	}
-	isGo := func() bool { return j.runEvery(j.asHung(far, x), 1).joint >= Guard }
+	if j.flow != nil {
+		j.flow.exact(plan.surface.at) // the anchor of the lines
+	}
+	stride := 1
+	if j.flow != nil {
+		stride = 2
+	}
+	r := j.newRig(plan, stride)
+	alone := make([]float64, len(j.plan)) // by number; 0 where not limiting
 	for n, a := range at {
 		q := quantity(a % int(quantities))
+		off := make([]float64, len(j.plan))
 		holds := func(t float64) bool {
-			defer func() { x[a] = j.plan[a] }()
-			if x[a] = j.plan[a] + t; !isGo() {
-				return false
+			for _, d := range [2]float64{t, -t} {
+				off[a] = d
+				if p, _ := r.probability(off); p < Guard {
+					return false
+				}
 			}
-			x[a] = j.plan[a] - t
-			return isGo()
+			return true
 		}
-		t := q.free()
-		if !holds(t) {
-			t = largest(t, holds)
+		if t, limiting := firstFailure(plan.est[a].U(), j.free(q), holds); limiting {
+			alone[a] = t
 			v := q.border(t)
 			out.Box[n].Alone = &v
-		} else {
-			t = math.Inf(1)
 		}
-		alone = append(alone, t)
 	}
-	corner := make([]float64, len(at))
-	set := func(scale float64, signs []float64) {
-		for n, a := range at {
-			x[a] = j.plan[a]
-			if !math.IsInf(alone[n], 1) {
-				x[a] += scale * signs[n] * alone[n]
+	edges := func(scale float64) []float64 {
+		e := make([]float64, len(alone))
+		for i := range e {
+			e[i] = scale * alone[i]
+		}
+		return e
+	}
+	search := func(scale float64) bool {
+		for _, off := range r.corners(edges(scale)) {
+			if p, _ := r.probability(off); p < Guard {
+				return false
 			}
 		}
+		return true
 	}
-	worst := func(scale float64) (least float64, binding string) {
+	scale := 1.0
+	if !search(1) {
+		scale = largest(1, search)
+	}
+	// The last word is the verdict's own, with its surface about the corner itself, at
+	// the corners that came out worst.
+	worst := r.worstCorners(edges(scale), 3)
+	at1 := func(f float64) (least float64, corner []float64, binding string) {
 		least = math.Inf(1)
-		for _, signs := range j.corners(x, set, scale, len(at)) {
-			set(scale, signs)
-			o := j.runEvery(j.asHung(far, x), 1)
-			if o.joint < least {
-				least = o.joint
-				copy(corner, signs)
+		for _, off := range worst {
+			x := append([]float64(nil), j.plan...)
+			for i := range x {
+				x[i] += f * off[i]
+			}
+			if o := j.runEvery(j.asHung(far, x), 1); o.joint < least {
+				least, corner = o.joint, off
 				if k := j.critical(o); k >= 0 {
 					binding = j.limits[k].Name
 				}
 			}
 		}
-		return least, binding
+		return least, corner, binding
 	}
-	scale := 1.0
-	holds := func(s float64) bool {
-		least, binding := worst(s)
-		if least < Guard {
+	holds := func(f float64) bool {
+		p, _, binding := at1(f)
+		if p < Guard {
 			out.Binding = binding
 		}
-		return least >= Guard
+		return p >= Guard
 	}
-	if !holds(1) {
-		scale = largest(1, holds)
+	f := 1.0
+	if j.flow != nil {
+		lo, hi := 0.0, 1.0
+		for most := 1 / scale; holds(hi); hi = math.Min(hi*1.15, most) {
+			if lo = hi; hi >= most {
+				break
+			}
+		}
+		for hi-lo > 0.01*hi {
+			if mid := (lo + hi) / 2; holds(mid) {
+				lo = mid
+			} else {
+				hi = mid
+			}
+		}
+		f = lo
+	} else {
+		holds(1.01) // names the limit that binds
 	}
-	out.CornerProbability, _ = worst(scale)
+	var corner []float64
+	out.CornerProbability, corner, _ = at1(f)
+	scale *= f
+	for i := range corner {
+		corner[i] *= f
+	}
 	for n, a := range at {
 		q := quantity(a % int(quantities))
-		edge := 0.0
-		if !math.IsInf(alone[n], 1) {
-			edge = scale * alone[n]
-			v := q.border(edge)
+		if alone[a] > 0 {
+			v := q.border(scale * alone[a])
 			out.Box[n].Together = &v
 		}
-		out.WorstCorner = append(out.WorstCorner, q.border(corner[n]*edge))
+		out.WorstCorner = append(out.WorstCorner, q.border(corner[a]))
 	}
 	return out, nil
+}
+
+// firstFailure walks outward from 0 in growing steps, the first as long as the
+// doubt, until holds fails, and bisects the last step. limiting is false where
+// nothing fails up to most.
+func firstFailure(first, most float64, holds func(float64) bool) (t float64, limiting bool) {
+	lo, step := 0.0, first
+	for {
+		hi := math.Min(lo+step, most)
+		if !holds(hi) {
+			return lo + largest(hi-lo, func(d float64) bool { return holds(lo + d) }), true
+		}
+		if hi >= most {
+			return 0, false
+		}
+		lo, step = hi, step*1.3
+	}
 }
 
 // largest bisects for the largest t below top that holds, to half a per cent.
 func largest(top float64, holds func(float64) bool) float64 {
 	lo, hi := 0.0, top
 	for range 24 {
-		if hi-lo < 0.005*lo {
+		if hi-lo < 0.005*lo || hi-lo < 1e-4*top {
 			break
 		}
 		if mid := (lo + hi) / 2; holds(mid) {
@@ -164,46 +220,6 @@ func largest(top float64, holds func(float64) bool) float64 {
 		}
 	}
 	return lo
-}
-
-// corners are the corners worth trying: for each limit the one where it is worst,
-// found by turning one sign after the other until none makes it worse, from all
-// plus and from all minus.
-func (j *judge) corners(x []float64, set func(float64, []float64), scale float64, n int) [][]float64 {
-	var out [][]float64
-	for k := range j.limits {
-		l := &j.limits[k]
-		if l.value == nil {
-			continue
-		}
-		for _, from := range [2]float64{1, -1} {
-			signs := make([]float64, n)
-			for i := range signs {
-				signs[i] = from
-			}
-			margin := func() float64 {
-				set(scale, signs)
-				return l.margin(l.value(x))
-			}
-			now := margin()
-			for range 4 { // sweeps: couplings between two signs need a second, more are rare
-				changed := false
-				for i := range signs {
-					signs[i] = -signs[i]
-					if m := margin(); m < now-1e-12 {
-						now, changed = m, true
-					} else {
-						signs[i] = -signs[i]
-					}
-				}
-				if !changed {
-					break
-				}
-			}
-			out = append(out, signs)
-		}
-	}
-	return out
 }
 
 // plannedMethod is the method by which the plan says a quantity will be read.

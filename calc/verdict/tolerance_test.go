@@ -41,11 +41,19 @@ func hang(s *sheet.Sheet, box []verdict.Tolerance, off []float64) {
 // TestTolerancesAreTheInverseOfTheVerdict: at the worst corner of the box go, just
 // outside not; each tolerance alone likewise.
 func TestTolerancesAreTheInverseOfTheVerdict(t *testing.T) {
-	for _, name := range []string{"crossed-pair-go", "two-crossed-panels"} {
+	for _, name := range []string{"crossed-pair-go", "two-crossed-panels", "two-omnis-half-wavelength"} {
 		s := job(t, name)
 		if name == "two-crossed-panels" { // the limits that need no stream computation
 			s.Limits = s.Limits[3:]
 		}
+		if name == "two-omnis-half-wavelength" { // the correlation, by the stream computation, beside a lean
+			s.Limits = []sheet.Limit{{Name: sheet.EnvelopeCorr, Value: 0.45}, {Name: sheet.SkewDeviation, Value: 2}, {Name: sheet.RateShare, AtLeast: true, Value: 0.97}}
+			// taped to 3 mm, half a wavelength would have no tolerance left: the plan is wider
+			wide := 60.0
+			s.Near.Antennas[1].Position.Planned.Right = &wide
+			s.Surroundings = class("UMa", false)
+		}
+		hang(s, nil, nil)
 		tol, p := verdict.Tolerate(s)
 		if p != nil {
 			t.Fatal(p)

@@ -4,6 +4,7 @@ import (
 	"encoding/json"
 	"os"
 	"path/filepath"
+	"strings"
 	"testing"
 
 	"crossplumb/calc/wire"
@@ -32,6 +33,9 @@ func fuzzDoor(f *testing.F, op string, jobs bool) {
 			f.Fatal("no jobs", err)
 		}
 		for _, name := range names {
+			if op == "mount.tolerances" && strings.Contains(name, "four-crossed") {
+				continue // eight ports take seconds, and ask nothing that four do not
+			}
 			in, err := os.ReadFile(name)
 			if err != nil {
 				f.Fatal(err)

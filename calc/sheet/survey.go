@@ -35,6 +35,9 @@ func (s *survey) figure(item, body *codec.Value, id string) *codec.Problem {
 	if page != nil {
 		page = page.Free()
 	}
+	if typed := f.Maybe("typed"); typed != nil {
+		typed.Free() // as it stood on the screen, for people
+	}
 	if p := f.Done(); p != nil {
 		return p
 	}

@@ -100,7 +100,7 @@ func folded(t *testing.T, doc *codec.Value, entries string) *codec.Value {
 }
 
 const (
-	figuresNear = `{"id": "f1", "kind": "figures.read", "body": {"end": "near", "page": {"ports": [{"port": "1", "level_dbm": -61}]}}}`
+	figuresNear = `{"id": "f1", "kind": "figures.read", "body": {"end": "near", "page": {"ports": [{"port": "1", "level_dbm": -61}]}, "typed": {"level-1": "-61"}}}`
 	figuresLate = `{"id": "f2", "kind": "figures.read", "body": {"end": "near", "page": {"ports": [{"port": "1", "level_dbm": -52}]}}}`
 	controlOff  = `{"id": "c1", "kind": "power_control.confirmed", "body": {"name": "Bea"}}`
 )

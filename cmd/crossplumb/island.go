@@ -35,6 +35,7 @@ type (
 		Far          end          `json:"far"`
 		Path         path         `json:"path"`
 		Surroundings surroundings `json:"surroundings"`
+		Landmarks    []landmarkAt `json:"landmarks,omitempty"`
 		RadioFigures *struct{}    `json:"radio_figures"`
 		Limits       []limit      `json:"limits"`
 	}
@@ -59,6 +60,11 @@ type (
 		BearingDeg   float64 `json:"bearing_deg"`
 		ElevationDeg float64 `json:"elevation_deg"`
 		DistanceM    float64 `json:"distance_m"`
+
+		NearAt      *place     `json:"near_at,omitempty"`
+		FarAt       *place     `json:"far_at,omitempty"`
+		HeightDatum string     `json:"height_datum,omitempty"`
+		Obstacles   []obstacle `json:"obstacles,omitempty"`
 	}
 	surroundings struct {
 		Sight   bool     `json:"sight"`

@@ -35,6 +35,7 @@ var (
 	goodLevel  = instrument{name: "level 3", method: "level", bias: 0.1, sd: 0.1, step: 0.1, u: 0.2}
 	phoneTilt  = instrument{name: "phone", method: "phone", bias: 0.3, sd: 0.3, step: 0.1, u: 0.5}
 	landmark   = instrument{name: "sight 2", method: "landmark", bias: 0.3, sd: 0.4, step: 0.1, u: 1}
+	compass    = instrument{name: "hand compass", method: "compass", bias: -6.4, sd: 0.5, step: 1, u: 5}
 	goodTape   = instrument{name: "tape 1", method: "tape", bias: 1, sd: 1.5, step: 1, u: 3}
 	wornTape   = instrument{name: "tape 9, hook bent", method: "tape", bias: 8, sd: 12, step: 5, u: 25}
 	quantities = []string{"skew", "tilt", "azimuth", "position"}
@@ -63,6 +64,9 @@ type mountRun struct {
 	leftSkip []string         // quantities that were not read again
 	tape     instrument
 	angles   instrument
+	bearing  *instrument // nil: a landmark
+	searches []searchRun
+	pages    []pageRun
 	planted  fault
 }
 
@@ -85,6 +89,7 @@ type simulator struct {
 	store  *db.Store
 	clock  *demoClock
 	random *rand.Rand
+	aimed  *rand.Rand // for peak searches, so that these change nothing of what is read elsewhere
 	today  time.Time
 	people map[string]db.Person
 	phones map[string]*phone
@@ -100,7 +105,7 @@ type phone struct {
 }
 
 func simulate(ctx context.Context, store *db.Store, clock *demoClock, seed uint64, cost server.HashCost, today time.Time) error {
-	s := &simulator{ctx: ctx, store: store, clock: clock, random: rand.New(rand.NewPCG(seed, 1)), today: today,
+	s := &simulator{ctx: ctx, store: store, clock: clock, random: rand.New(rand.NewPCG(seed, 1)), aimed: rand.New(rand.NewPCG(seed, 2)), today: today,
 		people: map[string]db.Person{}, phones: map[string]*phone{}}
 	clock.at = s.morning(12)
 	for _, p := range demoPeople {
@@ -178,6 +183,9 @@ func (s *simulator) run(v visit) error {
 	s.later(20, 40)
 	for _, m := range v.mounts {
 		s.readAll(p, job, m, "as_found", m.found, nil)
+		if err := s.aim(p, job, m); err != nil {
+			return err
+		}
 		if m.left == nil {
 			continue
 		}
@@ -289,6 +297,9 @@ func (s *simulator) read(m mountRun, quantity string, hangs truth) (r reading, t
 	r = reading{Unit: "deg"}
 	if quantity == "azimuth" {
 		with = landmark
+		if m.bearing != nil {
+			with = *m.bearing
+		}
 		r.North = ptr("true")
 	}
 	r.U, r.Method, r.Instrument = &with.u, with.method, &with.name

@@ -23,7 +23,8 @@ func demoVisits() []visit {
 			dayBefore: 3, climber: "Tam Verrill", until: db.StageHandedIn, remark: "Lower bracket bolt will not move, thread is gone.",
 			open: []string{"Lower bracket bolt of A"},
 			mounts: []mountRun{{
-				id: "m1", name: "north-west", sheet: crossedPairSheet("Tollan Quarry, north-west", 318, 1.2, 2300, true),
+				id: "m1", name: "north-west", sheet: crossedPairSheet("Tollan Quarry, north-west", 318, 1.2, 2300, true).
+					survey(tollanAt, weirAt, []obstacle{quarryRim, weirElms}, []landmarkAt{chapelTower, harbourLamp}),
 				found: hang1("A", truth{skew: 9.5, tilt: 1.0, azimuth: 317.5}), left: hang1("A", truth{skew: 9.1, tilt: 1.0, azimuth: 317.5}),
 				angles: goodLevel, planted: fault{word: "no-go", limit: "crosstalk_db", antenna: "A", quantity: "skew"},
 			}},
@@ -33,7 +34,13 @@ func demoVisits() []visit {
 			lat: 46.146, lon: -31.398, access: "Through the yard; the dog is loud and harmless.", emergency: emergency,
 			dayBefore: 2, climber: "Bea Quillan", until: db.StageHandedIn, remark: "Was 5 degrees off as found, turned and read again.",
 			mounts: []mountRun{{
-				id: "m1", name: "south-east", sheet: crossedPairSheet("Weir Barn, south-east", 138, -1.2, 2300, true),
+				id: "m1", name: "south-east", sheet: crossedPairSheet("Weir Barn, south-east", 138, -1.2, 2300, true).
+					survey(weirAt, tollanAt, []obstacle{weirElms.back(2300), quarryRim.back(2300)}, []landmarkAt{chapelTower}),
+				searches: []searchRun{{antenna: "A", axis: "azimuth", from: 120, to: 156, step: 6, top: 138.4, width: 40, peak: -63}},
+				pages: []pageRun{
+					pageOf("near", 2, 6, figures("1", -63, 28, 29, 20), figures("2", -69, 22, 23, 8)),
+					pageOf("far", 2, 6, figures("1", -63, 28, 29, 20), figures("2", -69, 22, 23, 20)),
+				},
 				found: hang1("A", truth{skew: 5.2, tilt: -1.5, azimuth: 138.5}), left: hang1("A", truth{skew: 0.2, tilt: -1.5, azimuth: 138.5}),
 				angles: goodLevel, planted: fault{word: "go"},
 			}},
@@ -67,7 +74,8 @@ func demoVisits() []visit {
 			dayBefore: 1, climber: "Bea Quillan", until: db.StageUnderWay,
 			mounts: []mountRun{
 				{
-					id: "m1", name: "west, to Gannet Head", sheet: crossedPairSheet("Corrow Hill, west", 252, 0.4, 1900, false),
+					id: "m1", name: "west, to Gannet Head", sheet: crossedPairSheet("Corrow Hill, west", 252, 0.4, 1900, false).
+						survey(corrowAt, gannetAt, []obstacle{fuchsiaHedge}, []landmarkAt{chapelTower, warrenCairn}),
 					found: hang1("A", truth{skew: 7.0, tilt: 0.2, azimuth: 251.5}), left: hang1("A", truth{skew: 0.4, tilt: 0.2, azimuth: 251.5}),
 					leftSkip: []string{"A tilt"},
 					angles:   goodLevel, planted: fault{word: "measure again", antenna: "A", quantity: "tilt"},
@@ -81,10 +89,11 @@ func demoVisits() []visit {
 		},
 		{
 			site: "Gannet Head", title: "Gannet Head, link to Corrow Hill", crew: northCrew,
-			lat: 46.125, lon: -31.369, access: "Headland path, closed in winds that the warden names. Ring him first.", emergency: emergency,
+			lat: 46.133715, lon: -31.368384, access: "Headland path, closed in winds that the warden names. Ring him first.", emergency: emergency,
 			dayBefore: 0, climber: "Tam Verrill", until: db.StageIssued,
 			mounts: []mountRun{{
-				id: "m1", name: "north-east", sheet: crossedPairSheet("Gannet Head, north-east", 72, -0.4, 1900, true),
+				id: "m1", name: "north-east", sheet: crossedPairSheet("Gannet Head, north-east", 72, -0.4, 1900, true).
+					survey(gannetAt, corrowAt, []obstacle{fuchsiaHedge.back(1900)}, []landmarkAt{chapelTower, warrenCairn}),
 			}},
 		},
 		{
@@ -101,6 +110,25 @@ func demoVisits() []visit {
 			dayBefore: 0, climber: "Odd Hessel", until: db.StageIssued,
 			mounts: []mountRun{{
 				id: "m1", name: "tower, east", sheet: crossedPairSheet("Chapel Ness, tower, east", 64, 0.9, 1100, false),
+			}},
+		},
+		{
+			// Aimed by compass alone, the near dish was tightened on its side lobe, 9 degrees right of the main one.
+			site: "Hollin Edge", title: "Hollin Edge, dish link to Kiln Garth", crew: northCrew,
+			lat: 46.104, lon: -31.344, access: "Past the sheep wash; the gate sticks.", emergency: emergency,
+			dayBefore: 5, climber: "Bea Quillan", until: db.StageHandedIn, remark: "Level stays low. Fog, nothing to sight by, compass only.",
+			open: []string{"Level 22 dB under what was expected"},
+			mounts: []mountRun{{
+				id: "m1", name: "south", sheet: dishLinkSheet("Hollin Edge, south", 204, -0.3, 3400).
+					survey(hollinAt, kilnAt, []obstacle{{"wool store", 900, 48}}, []landmarkAt{warrenCairn}),
+				found: hang1("A", truth{skew: -0.3, tilt: -0.3, azimuth: 213}), left: hang1("A", truth{skew: -0.3, tilt: -0.3, azimuth: 213}),
+				angles: goodLevel, bearing: &compass,
+				searches: []searchRun{{antenna: "A", axis: "azimuth", from: 210.6, to: 215.4, step: 0.6, top: 213, width: 2.8, peak: -62.5}},
+				pages: []pageRun{
+					pageOf("near", 2, 6, figures("1", -63, 26, 9, 20), figures("2", -63, 25, 9, 19)),
+					pageOf("far", 2, 6, figures("1", -63, 26, 10, 21), figures("2", -64, 25, 9, 20)),
+				},
+				planted: fault{word: "measure again", antenna: "A", quantity: "azimuth"},
 			}},
 		},
 	}

@@ -24,18 +24,18 @@ export function FiguresTable({ predicted, caption }: { predicted: readonly Predi
       </thead>
       <tbody>
         {predicted.map((p) => {
-          const off = Math.abs(p.measured - p.value) > offFrom * p.u;
+          const off = Math.abs(p.measured - p.predicted) > offFrom * p.u;
           const { unit, decimals } = mannerOf(p.figure);
           return (
             <tr key={`${p.end} ${p.port} ${p.figure}`}>
               <th scope="row">{p.port ? say('figures.of-port', { port: p.port, figure: figureName(p.figure) }) : figureName(p.figure)}</th>
               <td class="number">
-                {figure(p.value, decimals)} ± {figure(p.u, p.u < 2 ? 1 : 0)}
+                {figure(p.predicted, decimals)} ± {figure(p.u, p.u < 2 ? 1 : 0)}
               </td>
               <td class="number" data-off={off}>
                 {figure(p.measured, decimals)}
                 {unit && `\u00a0${unit}`}
-                {off && <span class="off-mark">{say(p.measured < p.value ? 'figures.low' : 'figures.high')}</span>}
+                {off && <span class="off-mark">{say(p.measured < p.predicted ? 'figures.low' : 'figures.high')}</span>}
               </td>
             </tr>
           );
@@ -67,15 +67,15 @@ export function figureName(name: string): string {
   return key ? say(key) : name.replace(/_/g, ' ');
 }
 
-/** The candidate whose predictions are those of the sound link. */
+/** What a sound link would show. */
 export function soundLink(ranking: FaultRanking): readonly PredictedFigure[] | null {
-  return ranking.candidates.find((c) => c.code === 'nothing_stands_out')?.predicts ?? null;
+  return ranking.expected ?? ranking.candidates.find((c) => c.code === 'nothing_stands_out')?.predicts ?? null;
 }
 
 export function Candidates({ ranking }: { ranking: FaultRanking }) {
   const shown = ranking.candidates.filter((c, i) => i < 1 || c.odds >= 0.01).slice(0, 5);
   const [first] = shown;
-  const shares = first ? shown.filter((c) => c !== first && first.cannot_tell.includes(c.name)) : [];
+  const shares = first ? shown.filter((c) => c !== first && first.cannot_tell_from.includes(c.name)) : [];
   return (
     <>
       {ranking.none_fits && <Message tone="warn">{say('fault.none-fits')}</Message>}

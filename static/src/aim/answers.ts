@@ -126,7 +126,7 @@ export interface PredictedFigure {
   end: 'near' | 'far';
   port: string | null;
   figure: string;
-  value: number;
+  predicted: number;
   u: number;
   measured: number;
 }
@@ -140,11 +140,13 @@ export interface Candidate {
   text: string;
   check_next: string;
   predicts: PredictedFigure[];
-  cannot_tell: string[];
+  cannot_tell_from: string[];
 }
 
 export interface FaultRanking {
   candidates: Candidate[];
+  /** What a sound link would show, whatever is ranked. */
+  expected?: PredictedFigure[];
   none_fits: boolean;
   remarks: string[];
   method: Method;

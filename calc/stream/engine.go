@@ -595,11 +595,11 @@ func (e *Engine) scatterCovariance(near bool) []complex128 {
 			for i := range own {
 				for j := range own {
 					for k := range other {
-						a, b := p[k*c.far+min(i, own-1)], p[k*c.far+j]
 						if near {
-							a, b = p[i*c.far+k], p[j*c.far+k]
+							out[i*own+j] += p[i*c.far+k] * conj(p[j*c.far+k])
+						} else {
+							out[i*own+j] += p[k*c.far+i] * conj(p[k*c.far+j])
 						}
-						out[i*own+j] += a * conj(b)
 					}
 				}
 			}

@@ -46,10 +46,11 @@ export function temporary(name) {
   return dir;
 }
 
-/** Keeps what the person sees as a build artefact. */
+/** Keeps what the person sees as a build artefact; a desk page as a whole, a phone as it lies in the hand. */
 export async function picture(page, name) {
   mkdirSync(pictures, { recursive: true });
-  await page.screenshot({ path: path.join(pictures, `${name}.png`), fullPage: true });
+  const fullPage = page.viewportSize().width >= 700;
+  await page.screenshot({ path: path.join(pictures, `${name}.png`), fullPage });
 }
 
 /** Gathers what a page complains of. A test that does not expect any of it asks for the list to be empty. */

@@ -16,11 +16,12 @@ async function acceptInvitation(page, link) {
   await page.getByRole('button', { name: 'Accept the invitation' }).click();
 }
 
-const field = (page) => page.getByRole('textbox', { name: /^Reading|middle to middle/ });
+const field = (page) => page.locator('#reading-value, #reading-right');
+const doubtField = (page) => page.locator('#reading-u');
 const keep = (page) => page.getByRole('button', { name: /^Keep / });
 
 async function openReading(page, phase, what) {
-  await page.getByRole('region', { name: `Readings, ${phase}` }).getByRole('link', { name: new RegExp(`^Measure ${what},`) }).click();
+  await page.getByRole('region', { name: `Readings, ${phase}` }).getByRole('link', { name: new RegExp(`^Measure ${what}\\b`) }).click();
   await page.getByRole('heading', { name: what }).waitFor();
 }
 
@@ -28,7 +29,7 @@ async function openReading(page, phase, what) {
 async function read(page, phase, what, value, doubt, way) {
   await openReading(page, phase, what);
   await field(page).fill(value);
-  await page.getByRole('textbox', { name: /^Doubt/ }).fill(doubt);
+  await doubtField(page).fill(doubt);
   if (way) await page.getByRole('radio', { name: way, exact: true }).check({ force: true });
   await keep(page).click();
   await page.getByRole('status').filter({ hasText: `${what} ` }).filter({ hasText: 'kept on this phone' }).waitFor();
@@ -170,7 +171,7 @@ test('a crossed pair, from mast to sign-off, with the server killed in the middl
   await step('before the climb: cautions are confirmed by name, and gate nothing', async () => {
     await page.getByRole('link', { name: /^before/ }).click();
     await page.getByRole('heading', { name: 'Before the climb' }).waitFor();
-    const buttons = page.getByRole('button', { name: /^Confirm: / });
+    const buttons = page.getByRole('button', { name: /^Confirm/ });
     const n = await buttons.count();
     assert.ok(n >= 3, `${n} cautions`);
     for (let i = 0; i < n; i++) {
@@ -252,7 +253,7 @@ test('a crossed pair, from mast to sign-off, with the server killed in the middl
     await waiting(page, 3);
     assert.equal(await field(page).inputValue(), '47,');
     await field(page).fill('47,3');
-    await page.getByRole('textbox', { name: /^Doubt/ }).fill('0,5');
+    await doubtField(page).fill('0,5');
     await picture(page, 'phone-10-reading');
     await keep(page).click();
     await verdict(page, 'go');
@@ -364,7 +365,7 @@ test('two like omnis set apart: the tape is read, an impossible distance is answ
   await page.getByRole('link', { name: /Skerry Point/ }).click();
   await page.getByRole('link', { name: /^as found/ }).click();
 
-  await openReading(page, 'as found', 'B place');
+  await openReading(page, 'as found', 'B position');
   await field(page).fill('-3');
   await keep(page).click();
   await page.getByText('A distance is never less than nothing').first().waitFor();
@@ -376,7 +377,7 @@ test('two like omnis set apart: the tape is read, an impossible distance is answ
   await read(page, 'as found', 'A tilt', '0', '0,3');
   await read(page, 'as found', 'B skew', '0,5', '0,3', 'right');
   await read(page, 'as found', 'B tilt', '0', '0,3');
-  await read(page, 'as found', 'B place', '26,5', '1', 'right');
+  await read(page, 'as found', 'B position', '26,5', '1', 'right');
   const said = await until('a word', () => strip(page).evaluate((it) => (it.getAttribute('aria-busy') === 'false' ? it.dataset.word : '')), Boolean);
   assert.ok(['go', 'no-go', 'measure again'].includes(said), said);
   await picture(page, 'phone-21-omnis');
@@ -398,4 +399,33 @@ test('two like omnis set apart: the tape is read, an impossible distance is answ
   await waiting(page, 0);
   await compareLogs(server, job, await onPhone(page));
   assert.deepEqual(plainOnly(errors), []);
+});
+
+test('two windows of one phone: one log, one sender, nothing twice', { timeout: 120_000 }, async (t) => {
+  const server = await Crossplumb.open(t, temporary('windows-data'));
+  const { climberLink } = await server.people();
+  const job = await server.job('crossed-pair-go.json', 'Brae Hill');
+  const phone = await openProfile(t, temporary('windows-phone'), PHONE);
+  const one = phone.pages()[0] ?? (await phone.newPage());
+  await acceptInvitation(one, climberLink);
+  await one.getByRole('link', { name: /Brae Hill/ }).waitFor();
+  const two = await phone.newPage();
+  await two.goto(`${server.address}/#/job/${job}`);
+  await one.goto(`${server.address}/#/job/${job}`);
+  await server.kill();
+
+  const note = async (page, text) => {
+    await page.getByLabel('New note').fill(text);
+    await page.getByRole('button', { name: 'Keep the note' }).click();
+    await page.getByText(text, { exact: true }).waitFor();
+  };
+  for (let i = 1; i <= 4; i++) await Promise.all([note(one, `from one, ${i}`), note(two, `from two, ${i}`)]);
+  await Promise.all([waiting(one, 8), waiting(two, 8)]);
+
+  await server.start();
+  await Promise.all([one, two].map((page) => page.evaluate(() => dispatchEvent(new Event('online')))));
+  await Promise.all([waiting(one, 0), waiting(two, 0)]);
+  const rows = await onPhone(one);
+  assert.equal(rows.length, 8);
+  await compareLogs(server, job, rows);
 });

@@ -26,6 +26,24 @@ const askReady = (page) =>
       }),
   );
 
+/** As if somebody had signed in on this phone: this shelf has no server behind it. */
+const signedIn = (page) =>
+  page.evaluate(
+    () =>
+      new Promise((resolve, reject) => {
+        const opening = indexedDB.open('crossplumb');
+        opening.onerror = () => reject(opening.error);
+        opening.onsuccess = () => {
+          const tx = opening.result.transaction('settings', 'readwrite');
+          tx.objectStore('settings').put({ user: { id: 'u1', name: 'Una', role: 'climber', crew: 'west' }, until: '2100-01-01T00:00:00Z' }, 'session');
+          tx.oncomplete = () => {
+            opening.result.close();
+            resolve();
+          };
+        };
+      }),
+  );
+
 const release = (page) => page.evaluate(() => document.documentElement.dataset.release);
 
 /** Asks calc through the very Worker and wasm that the page would use. */
@@ -126,6 +144,37 @@ test('a new version waits, whole, until a person takes it; then all of it is new
   await shelf.close();
   await page.reload();
   assert.equal(await release(page), 'SECONDVERSION', 'and without a server too');
+});
+
+test('the person is offered the new version, takes it, and the page loads again by itself', { timeout: 60_000 }, async (t) => {
+  const { shelf, address, page } = await phone(t);
+  await page.goto(address);
+  await controlled(page);
+  await signedIn(page);
+  await page.reload();
+  await page.getByRole('heading', { name: 'Jobs' }).waitFor();
+  await page.getByText('Ready without coverage.').waitFor();
+  shelf.version = 'SECONDVERSION';
+  await page.evaluate(async () => (await navigator.serviceWorker.getRegistration()).update());
+  const offer = page.getByRole('button', { name: 'Take the newer one' });
+  await offer.waitFor();
+  assert.notEqual(await release(page), 'SECONDVERSION');
+  await offer.click();
+  await until('the page is the new one', () => release(page), (now) => now === 'SECONDVERSION');
+  await page.getByText('Ready without coverage.').waitFor();
+  assert.equal(await offer.count(), 0);
+});
+
+test('with a hole in what is kept the page does not promise to work without coverage', { timeout: 60_000 }, async (t) => {
+  const { shelf, address, page } = await phone(t);
+  shelf.missing.add(precache().files.find((file) => file.startsWith('/gen/worker-')));
+  await page.goto(address);
+  await signedIn(page);
+  await page.reload();
+  await page.getByText('Not ready without coverage yet.').waitFor();
+  await until('the list was asked for', () => shelf.requests.filter((path) => path === '/gen/precache.js').length > 0);
+  await page.waitForTimeout(1_000);
+  assert.equal(await page.getByText('Ready without coverage.').count(), 0);
 });
 
 test('/api is never answered from the phone', { timeout: 60_000 }, async (t) => {

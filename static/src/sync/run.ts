@@ -16,6 +16,8 @@ import { watchForUpdates } from './update.ts';
 const LOOK_MS = 30_000;
 /** Entries of one touch of the screen come close together: they go up in one request. */
 const GATHER_MS = 300;
+/** Another window is at it: this one asks again soon, to know for itself how things stand. */
+const BESIDE_MS = 1_000;
 
 let timer: ReturnType<typeof setTimeout> | undefined;
 let due = Infinity;
@@ -52,6 +54,8 @@ export function syncNow(): Promise<void> {
     if (again) {
       again = false;
       now();
+    } else {
+      void countWaiting().then((more) => more && soon(GATHER_MS)); // made in the moment of ending
     }
   });
   return running;
@@ -62,6 +66,8 @@ function now(): void {
 }
 
 function soon(ms: number): void {
+  if (running) return; // its end looks again
+  if (status.value.state === 'sign in') return; // only a person can change that
   const at = Date.now() + ms;
   if (at >= due) return; // an earlier try is set already
   // A phone without coverage does not get it by one more entry: the back-off stands.
@@ -83,7 +89,7 @@ async function oneWindow(): Promise<void> {
   if (!locks) return round();
   await locks.request('crossplumb sync', { ifAvailable: true }, async (lock) => {
     if (lock) await round();
-    else later(LOOK_MS);
+    else later(BESIDE_MS);
   });
 }
 
@@ -97,9 +103,10 @@ async function round(): Promise<void> {
     await push();
     await pull();
     failures = 0;
-    await countWaiting();
-    note({ state: 'up to date', signedIn: true, lastAnswerAt: localTime(new Date()) });
-    later(LOOK_MS);
+    // An entry may have been made after the last batch went up, while the jobs were brought.
+    const more = await countWaiting();
+    note({ state: more ? 'sending' : 'up to date', signedIn: true, lastAnswerAt: localTime(new Date()) });
+    later(more ? GATHER_MS : LOOK_MS);
   } catch (error) {
     await countWaiting();
     if (error instanceof ServerProblem && error.status === 401) {

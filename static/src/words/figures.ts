@@ -28,7 +28,7 @@ export function shortest(value: number, most: number): string {
 
 /**
  * Decimals that a standard uncertainty deserves: one significant figure, two when it begins with 1 (so that rounding
- * never moves it by more than a quarter; JCGM 100:2008, 7.2.6 allows two at most). Not more than three decimals.
+ * never moves it by more than a quarter; JCGM 100:2008, 7.2.6 has two at most, from memory). Not more than three decimals.
  */
 export function decimalsFor(u: number): number {
   if (!(u > 0)) return 1;

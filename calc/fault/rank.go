@@ -51,7 +51,9 @@ type Ranking struct {
 	Figures    int      // how many entered
 	// NoneFits: even the best candidate is farther off than chance in a thousand.
 	NoneFits bool
-	Remarks  []string
+	// Sound is what a link with nothing wrong would show, whatever ranks first.
+	Sound   []Predicted
+	Remarks []string
 }
 
 // listed is how likely a candidate must be to be shown in full.
@@ -150,6 +152,11 @@ func (l *link) rank(o []observation, f *Figures) (*Ranking, []fitted) {
 			break
 		}
 		r.Candidates = append(r.Candidates, l.ranked(&fits[i], odds, o, f))
+	}
+	for i := range fits {
+		if fits[i].code == Nothing {
+			r.Sound = l.ranked(&fits[i], 0, o, f).Predicts
+		}
 	}
 	for i := range r.Candidates {
 		for k := range r.Candidates {

@@ -34,17 +34,6 @@ func faultRank(v *codec.Value) (answer, *Problem) {
 		if c.Unit != "" {
 			amount = codec.Num(c.Amount)
 		}
-		predicts := codec.Seq()
-		for _, q := range c.Predicts {
-			predicts.Items = append(predicts.Items, codec.Obj(
-				codec.M("end", codec.Str(q.End)),
-				codec.M("port", codec.MaybeStr(q.Port)),
-				codec.M("figure", codec.Str(q.Figure)),
-				codec.M("predicted", codec.Num(q.Value)),
-				codec.M("u", codec.Num(q.Doubt)),
-				codec.M("measured", codec.Num(q.Measured)),
-			))
-		}
 		list.Items = append(list.Items, codec.Obj(
 			codec.M("code", codec.Str(c.Code)),
 			codec.M("name", codec.Str(c.Name())),
@@ -57,14 +46,31 @@ func faultRank(v *codec.Value) (answer, *Problem) {
 			codec.M("text", codec.Str(c.Text)),
 			codec.M("check_next", codec.Str(c.CheckNext)),
 			codec.M("cannot_tell_from", codec.Strs(c.CannotTell)),
-			codec.M("predicts", predicts),
+			codec.M("predicts", predictedAnswer(c.Predicts)),
 		))
 	}
 	return codec.Obj(
 		codec.M("candidates", list),
+		codec.M("expected", predictedAnswer(r.Sound)),
 		codec.M("figures", codec.Int(r.Figures)),
 		codec.M("none_fits", codec.Truth(r.NoneFits)),
 		codec.M("told_apart_from", codec.Num(fault.ApartFor)),
 		codec.M("remarks", codec.Strs(r.Remarks)),
 	), nil
+}
+
+// predictedAnswer is each figure as predicted, with its doubt, beside what was read.
+func predictedAnswer(predicted []fault.Predicted) *codec.Value {
+	out := codec.Seq()
+	for _, q := range predicted {
+		out.Items = append(out.Items, codec.Obj(
+			codec.M("end", codec.Str(q.End)),
+			codec.M("port", codec.MaybeStr(q.Port)),
+			codec.M("figure", codec.Str(q.Figure)),
+			codec.M("predicted", codec.Num(q.Value)),
+			codec.M("u", codec.Num(q.Doubt)),
+			codec.M("measured", codec.Num(q.Measured)),
+		))
+	}
+	return out
 }

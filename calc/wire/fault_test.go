@@ -135,6 +135,27 @@ func TestFaultRankByHand(t *testing.T) {
 }
 
 // Where the figures do not tell, the odds are shared and it is said.
+// What a sound link would show stands in every answer, also where the figures are so
+// far off that it is not listed among the candidates. By hand: −59.3 dBm.
+func TestFaultRankAlwaysTellsWhatASoundLinkShows(t *testing.T) {
+	far := strings.ReplaceAll(strings.ReplaceAll(healthy, "-59", "-94"), "-60", "-95")
+	for _, figures := range []string{healthy, far} {
+		expected := ask(t, "fault.rank", string(faulty(t, figures, nil)))["expected"].([]any)
+		levels := 0
+		for _, e := range expected {
+			if p := e.(map[string]any); p["figure"] == "level_dbm" {
+				levels++
+				if got := p["predicted"].(float64); math.Abs(got+59.3) > 0.3 {
+					t.Errorf("%v port %v: a sound link is expected at %v dBm", p["end"], p["port"], got)
+				}
+			}
+		}
+		if levels != 4 {
+			t.Errorf("%d levels are expected", levels)
+		}
+	}
+}
+
 func TestFaultRankSharesTheOdds(t *testing.T) {
 	figures := `{"power_control_off":true,"near":{"ports":[{"port":"1","level_dbm":-77},{"port":"2","level_dbm":-77}]},"far":{"ports":[{"port":"1","level_dbm":-77},{"port":"2","level_dbm":-77}]}}`
 	first, list := best(t, faulty(t, figures, nil))

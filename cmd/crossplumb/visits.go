@@ -38,8 +38,8 @@ func demoVisits() []visit {
 					survey(weirAt, tollanAt, []obstacle{weirElms.back(2300), quarryRim.back(2300)}, []landmarkAt{chapelTower}),
 				searches: []searchRun{{antenna: "A", axis: "azimuth", from: 120, to: 156, step: 6, top: 138.4, width: 40, peak: -63}},
 				pages: []pageRun{
-					pageOf("near", 2, 6, figures("1", -63, 28, 29, 20), figures("2", -69, 22, 23, 8)),
-					pageOf("far", 2, 6, figures("1", -63, 28, 29, 20), figures("2", -69, 22, 23, 20)),
+					pageOf("near", 2, 5, figures("1", -63, 25, 28, 20), figures("2", -69, 21, 28, 8)),
+					pageOf("far", 2, 5, figures("1", -63, 26, 31, 21), figures("2", -69, 20, 22, 20)),
 				},
 				found: hang1("A", truth{skew: 5.2, tilt: -1.5, azimuth: 138.5}), left: hang1("A", truth{skew: 0.2, tilt: -1.5, azimuth: 138.5}),
 				angles: goodLevel, planted: fault{word: "go"},
@@ -125,8 +125,8 @@ func demoVisits() []visit {
 				angles: goodLevel, bearing: &compass,
 				searches: []searchRun{{antenna: "A", axis: "azimuth", from: 210.6, to: 215.4, step: 0.6, top: 213, width: 2.8, peak: -62.5}},
 				pages: []pageRun{
-					pageOf("near", 2, 6, figures("1", -63, 26, 9, 20), figures("2", -63, 25, 9, 19)),
-					pageOf("far", 2, 6, figures("1", -63, 26, 10, 21), figures("2", -64, 25, 9, 20)),
+					pageOf("near", 2, 1, figures("1", -63, 9, 9, 20), figures("2", -63, 9, 10, 19)),
+					pageOf("far", 2, 1, figures("1", -63, 10, 10, 21), figures("2", -64, 9, 9, 20)),
 				},
 				planted: fault{word: "measure again", antenna: "A", quantity: "azimuth"},
 			}},

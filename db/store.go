@@ -25,6 +25,7 @@ type Config struct {
 
 // Store is the open database.
 type Store struct {
+	path  string
 	write *sql.DB
 	read  *sql.DB
 	now   func() time.Time
@@ -64,7 +65,7 @@ func open(ctx context.Context, cfg Config, writer, reader url.Values) (_ *Store,
 	if err != nil {
 		return nil, err
 	}
-	s := &Store{now: cfg.Now, app: cfg.App}
+	s := &Store{path: path, now: cfg.Now, app: cfg.App}
 	if s.now == nil {
 		s.now = time.Now
 	}
@@ -101,15 +102,14 @@ func dsn(path string, options url.Values) string {
 	return (&url.URL{Scheme: "file", Path: path, RawQuery: options.Encode()}).String()
 }
 
-// Close folds the WAL into the file and closes. Stop whoever calls the store first.
+// Close closes all connections; where they are the last on the file, SQLite folds the write-ahead log into it. Stop
+// whoever calls the store first.
 func (s *Store) Close() error {
 	var errs []error
 	if s.read != nil {
 		errs = append(errs, s.read.Close())
 	}
 	if s.write != nil {
-		// Best effort: the WAL is as durable as the file, a checkpoint only makes it small.
-		_, _ = s.write.Exec("PRAGMA wal_checkpoint(TRUNCATE)")
 		errs = append(errs, s.write.Close())
 	}
 	return errors.Join(errs...)

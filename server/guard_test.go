@@ -3,6 +3,8 @@ package server
 import (
 	"bytes"
 	"compress/gzip"
+	"context"
+	"errors"
 	"fmt"
 	"net"
 	"net/http"
@@ -11,6 +13,7 @@ import (
 	"time"
 
 	"github.com/gofiber/fiber/v2"
+	sqlite3 "github.com/mattn/go-sqlite3"
 )
 
 // A write that a stranger's page could make a browser send is refused before anything reads it.
@@ -227,5 +230,46 @@ func TestShutdownEndsWithSilentConnections(t *testing.T) {
 	}
 	if took := time.Since(begin); took > 9*time.Second {
 		t.Errorf("it took %v", took)
+	}
+}
+
+// Fiber uses a request's memory for the next one. Our handlers keep nothing, and should one ever do, what it keeps must
+// stay what it was.
+func TestTextsOfARequestStay(t *testing.T) {
+	var kept []string
+	s := openSiteWith(t, func(srv *Server) {
+		srv.app.Get("/kept/:word", func(c *fiber.Ctx) error {
+			kept = append(kept, c.Params("word"), c.Query("q"), c.Get("X-Word"))
+			return c.SendStatus(http.StatusNoContent)
+		})
+	})
+	var want []string
+	for _, word := range []string{"aaaa", "bbbb", "cccc", "dddd"} {
+		s.do(call{method: "GET", path: "/kept/" + word + "?q=" + word, headers: map[string]string{"X-Word": word}, status: 204})
+		want = append(want, word, word, word)
+	}
+	if fmt.Sprint(kept) != fmt.Sprint(want) {
+		t.Errorf("kept %v, want %v", kept, want)
+	}
+}
+
+// A database that cannot write, a lock that does not end, and time that runs out are told apart from faults of ours.
+func TestFailuresOfTheDatabaseAreNamed(t *testing.T) {
+	for _, c := range []struct {
+		err    error
+		status int
+		code   string
+	}{
+		{sqlite3.Error{Code: sqlite3.ErrFull}, 507, "storage_full"},
+		{fmt.Errorf("commit: %w", sqlite3.Error{Code: sqlite3.ErrIoErr}), 507, "storage_full"},
+		{sqlite3.Error{Code: sqlite3.ErrReadonly}, 507, "storage_full"},
+		{sqlite3.Error{Code: sqlite3.ErrBusy}, 503, "busy"},
+		{context.DeadlineExceeded, 503, "busy"},
+		{sqlite3.Error{Code: sqlite3.ErrCorrupt}, 500, "internal"},
+		{errors.New("anything"), 500, "internal"},
+	} {
+		if p := asProblem(c.err); p.Status != c.status || p.Code != c.code {
+			t.Errorf("%v becomes %d %s, want %d %s", c.err, p.Status, p.Code, c.status, c.code)
+		}
 	}
 }

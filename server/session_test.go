@@ -200,7 +200,7 @@ func TestAWeakPassphraseIsStoredAnew(t *testing.T) {
 
 // However many sign in at once, only two hashes run; the rest waits its turn.
 func TestHashesRunTwoAtATime(t *testing.T) {
-	s := openSite(t)
+	s := openSite(t, func(c *Config) { c.Patience = 300 * time.Millisecond })
 	for range hashesAtOnce {
 		leave, err := s.server.hashTurn(t.Context())
 		if err != nil {
@@ -208,9 +208,7 @@ func TestHashesRunTwoAtATime(t *testing.T) {
 		}
 		defer leave()
 	}
-	s.server.cfg.Patience = 50 * time.Millisecond
 	s.do(call{method: "POST", path: "/api/session", body: signInBody("Ilse", passphrase), status: 503, code: "busy"})
-	s.server.cfg.Patience = 10 * time.Second
 }
 
 func TestSignInsAreAudited(t *testing.T) {

@@ -36,6 +36,8 @@ func commands() []command {
 		{"judge", "SHEET.json", "the verdict on one mount sheet; status 0 go, 1 no-go, 2 measure again, 3 unreadable", plain(runJudge)},
 		{"reckon", "OP", "one calculation, JSON in on stdin, JSON out; status 2 when it cannot be answered", plain(runReckon)},
 		{"invite", "--data DIR --role ROLE", "a one-time link for a new person", runInvite},
+		{"backup", "--data DIR --to FILE", "a proved copy, while the server runs", runBackup},
+		{"restore", "--data DIR --from FILE", "puts a backup in place of the database, which is kept; the server must be stopped", runRestore},
 		{"prove", "--data DIR", "checks the log's chain and the database; --rebuild derives every table again", runProve},
 	}
 }

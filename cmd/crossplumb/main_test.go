@@ -189,6 +189,9 @@ func TestTheCommandLine(t *testing.T) {
 		{"an invitation without a crew", []string{"invite", "--data", "x"}, 2, "", "--crew"},
 		{"an invitation to a folder that is not there", []string{"invite", "--data", filepath.Join(empty, "no"), "--crew", "north"}, 1, "", "no database"},
 		{"proving nothing", []string{"prove", "--data", filepath.Join(empty, "no")}, 1, "", "no database"},
+		{"a backup to nowhere", []string{"backup", "--data", "x"}, 2, "", "--to"},
+		{"a restore from nowhere", []string{"restore", "--data", "x"}, 2, "", "--from"},
+		{"a restore from a file that is not there", []string{"restore", "--data", empty, "--from", filepath.Join(empty, "no")}, 1, "", "no"},
 		{"an operation that is none", []string{"reckon", "wind.load"}, 2, "", "unknown_operation"},
 		{"a sheet that is not there", []string{"judge", filepath.Join(empty, "no.json")}, 3, "", "no.json"},
 	} {
@@ -485,6 +488,74 @@ func entriesOf(t *testing.T, b *browser, device string) map[string]int {
 			return have
 		}
 		after = page.Next
+	}
+}
+
+// A backup from a running server, put back after more came in: the phone that sends everything again makes it whole.
+func TestBackupAndRestore(t *testing.T) {
+	folder := t.TempDir()
+	data, backup := filepath.Join(folder, "data"), filepath.Join(folder, "backup.db")
+	c := start(t, "demo", "--data", data, "--listen", "127.0.0.1:0")
+	address := strings.TrimPrefix(c.url, "http://")
+	b := newBrowser(c.url)
+	signIn := func() string {
+		t.Helper()
+		_, text, err := b.ask("POST", "/api/session", `{"name":"Tam Verrill","passphrase":"rope and rain and rivets"}`)
+		var who struct{ User struct{ ID string } }
+		if err != nil || json.Unmarshal([]byte(text), &who, json.MatchCaseInsensitiveNames(true)) != nil {
+			t.Fatalf("%s (%v)", text, err)
+		}
+		return who.User.ID
+	}
+	author := signIn()
+	var list struct{ Jobs []struct{ ID string } }
+	if _, text, err := b.ask("GET", "/api/jobs?stage=issued", ""); err != nil || json.Unmarshal([]byte(text), &list, json.MatchCaseInsensitiveNames(true)) != nil {
+		t.Fatalf("%s (%v)", text, err)
+	}
+	d := &testDevice{id: uuid.NewString(), job: list.Jobs[0].ID, author: author}
+	early, first := sentEntries(d, 5)
+	late, second := sentEntries(d, 5)
+	if status, _, err := b.ask("POST", "/api/entries", early); err != nil || status != 200 {
+		t.Fatal(status, err)
+	}
+	if got := crossplumb(t, "", "backup", "--data", data, "--to", backup); got.code != 0 || !strings.Contains(got.out, "proved") {
+		t.Fatalf("backup: %+v", got)
+	}
+	if got := crossplumb(t, "", "backup", "--data", data, "--to", backup); got.code != 1 || !strings.Contains(got.err, "replaces nothing") {
+		t.Errorf("a backup over a backup: %+v", got)
+	}
+	if status, _, err := b.ask("POST", "/api/entries", late); err != nil || status != 200 {
+		t.Fatal(status, err)
+	}
+	if got := crossplumb(t, "", "restore", "--data", data, "--from", backup); got.code != 1 || !strings.Contains(got.err, "another crossplumb") {
+		t.Errorf("a restore under a running server: %+v", got)
+	}
+	c.end(syscall.SIGTERM)
+	if got := crossplumb(t, "", "restore", "--data", data, "--from", backup); got.code != 0 || !strings.Contains(got.out, "epoch 2") {
+		t.Fatalf("restore: %+v", got)
+	}
+	c = start(t, "demo", "--data", data, "--listen", address)
+	if status, _, err := b.ask("GET", "/api/state", ""); err != nil || status != 401 {
+		t.Errorf("the old session answers %d (%v)", status, err)
+	}
+	signIn()
+	if _, text, err := b.ask("GET", "/api/state", ""); err != nil || !strings.Contains(text, `"epoch":2`) || !strings.Contains(text, `"max_contiguous_seq":5`) {
+		t.Errorf("state %s (%v)", text, err)
+	}
+	for _, body := range []string{early, late} {
+		if status, text, err := b.ask("POST", "/api/entries", body); err != nil || status != 200 || strings.Contains(text, "quarantined") {
+			t.Errorf("sent again: %d %s (%v)", status, text, err)
+		}
+	}
+	have := entriesOf(t, b, d.id)
+	for _, h := range append(first, second...) {
+		if have[h] != 1 {
+			t.Errorf("an entry is there %d times", have[h])
+		}
+	}
+	c.end(syscall.SIGTERM)
+	if got := crossplumb(t, "", "prove", "--data", data, "--rebuild"); got.code != 0 {
+		t.Errorf("prove: %+v", got)
 	}
 }
 

@@ -141,11 +141,15 @@ func (j *judge) runEvery(b *belief, stride int) *outcome {
 		}
 	}
 	for k := range out.met {
-		out.met[k] /= float64(n)
+		out.met[k] = share(out.met[k], n)
 	}
-	out.joint /= float64(n)
+	out.joint = share(out.joint, n)
 	return out
 }
+
+// share of n draws as a probability, (k + ½)/(n + 1): that none or all of a finite
+// number did is no certainty (Jeffreys' rule).
+func share(k float64, n int) float64 { return (k + 0.5) / (float64(n) + 1) }
 
 // directStride thins the draws where each needs the stream computation itself: 512
 // of them, which leaves a probability at the guard uncertain by 0.007.

@@ -211,7 +211,7 @@ func (r *rig) probability(off []float64) (p float64, binding string) {
 			most, binding = fails[k], j.limits[k].Name
 		}
 	}
-	return float64(good) / float64(len(r.at)), binding
+	return share(float64(good), len(r.at)), binding
 }
 
 // margin of one limit at the best estimate, hung off the plan by off.

@@ -110,14 +110,14 @@ func (v *judged) print(w io.Writer) {
 		if l.Sense == "at most" {
 			sense = "≤"
 		}
-		fmt.Fprintf(w, "%-24s %10s %10s %10s %12s  %s\n", l.Name, figure(l.Value), figure(l.U), sense+figure(&l.Limit), figure(l.Probability), l.Unit)
+		fmt.Fprintf(w, "%-24s %10s %10s %10s %12s  %s\n", l.Name, figure(l.Value), figure(l.U), sense+figure(&l.Limit), chance(l.Probability), l.Unit)
 	}
-	fmt.Fprintf(w, "\nall limits together: probability %.3f\n", v.Probability)
+	fmt.Fprintf(w, "\nall limits together: probability %s\n", chance(&v.Probability))
 	for _, m := range v.Missing {
 		fmt.Fprintf(w, "not measured: %s of %s\n", m.Quantity, m.Antenna)
 	}
 	for _, r := range v.Remedies {
-		fmt.Fprintf(w, "%s: %s %s to %s, %s (probability %.2f)\n", r.Text, r.Limit, figure(r.From), figure(r.To), r.WordAfter, r.ProbabilityAfter)
+		fmt.Fprintf(w, "%s: %s %s to %s, %s (probability %s)\n", r.Text, r.Limit, figure(r.From), figure(r.To), r.WordAfter, chance(&r.ProbabilityAfter))
 	}
 	if v.FarFromPlan {
 		fmt.Fprintln(w, "The far end is taken from its plan.")
@@ -131,4 +131,17 @@ func figure(x *float64) string {
 		return "–"
 	}
 	return fmt.Sprintf("%.3g", *x)
+}
+
+// chance is a probability in words of two digits, never called certain.
+func chance(p *float64) string {
+	switch {
+	case p == nil:
+		return "–"
+	case *p < 0.005:
+		return "<0.01"
+	case *p > 0.995:
+		return ">0.99"
+	}
+	return fmt.Sprintf("%.2f", *p)
 }

@@ -50,8 +50,8 @@ type node map[string]any
 // ofShape turns what a decoder asked for into a schema.
 func ofShape(s *codec.Shape) node {
 	n := node{}
-	if s.Free {
-		return n // read by another decoder
+	if s.Free && s.Kind == codec.Null {
+		return n // read by another decoder, and not in this operation
 	}
 	switch s.Kind {
 	case codec.Object:

@@ -14,10 +14,8 @@ func faultOperations() []operation {
 
 func faultRank(v *codec.Value) (answer, *Problem) {
 	s, p := sheet.Read(v)
-	if v.Described() {
-		if s != nil && s.RadioFigures != nil {
-			_, _ = fault.Read(s.RadioFigures, s)
-		}
+	if v.Described() { // the sheet leaves its figures to be read here
+		_, _ = fault.Read(codec.Open(v).Maybe("radio_figures"), &sheet.Sheet{})
 		return codec.Obj(), nil
 	}
 	if p != nil {

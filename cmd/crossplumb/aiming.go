@@ -47,6 +47,8 @@ type searchRun struct {
 	antenna, axis    string
 	from, to, step   float64
 	top, width, peak float64 // degrees, degrees, dBm
+
+	beamwidth, expected, doubt float64 // what the phone knew: of the data sheet, and of the path
 }
 
 // pageRun is what one radio's page showed.
@@ -139,7 +141,8 @@ func (s *simulator) search(p *phone, job string, m mountRun, search searchRun, n
 			AngleDeg: math.Round(a*10) / 10, LevelDBm: shown, Typed: &typed})
 		angles, levels = append(angles, math.Round(a*10)/10), append(levels, shown)
 	}
-	question, err := json.Marshal(map[string]any{"angles_deg": angles, "levels_dbm": levels, "power_control_off": true})
+	question, err := json.Marshal(map[string]any{"angles_deg": angles, "levels_dbm": levels, "power_control_off": true,
+		"beamwidth_deg": search.beamwidth, "expected_level_dbm": search.expected, "expected_u_db": search.doubt})
 	if err != nil {
 		return err
 	}

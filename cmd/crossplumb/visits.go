@@ -36,7 +36,8 @@ func demoVisits() []visit {
 			mounts: []mountRun{{
 				id: "m1", name: "south-east", sheet: crossedPairSheet("Weir Barn, south-east", 138, -1.2, 2300, true).
 					survey(weirAt, tollanAt, []obstacle{weirElms.back(2300), quarryRim.back(2300)}, []landmarkAt{chapelTower}),
-				searches: []searchRun{{antenna: "A", axis: "azimuth", from: 120, to: 156, step: 6, top: 138.4, width: 40, peak: -63}},
+				searches: []searchRun{{antenna: "A", axis: "azimuth", from: 120, to: 156, step: 6, top: 138.4, width: 40, peak: -63,
+					beamwidth: 40, expected: -63, doubt: 1.6}},
 				pages: []pageRun{
 					pageOf("near", 2, 5, figures("1", -63, 25, 28, 20), figures("2", -69, 21, 28, 8)),
 					pageOf("far", 2, 5, figures("1", -63, 26, 31, 21), figures("2", -69, 20, 22, 20)),
@@ -123,7 +124,8 @@ func demoVisits() []visit {
 					survey(hollinAt, kilnAt, []obstacle{{"wool store", 900, 48}}, []landmarkAt{warrenCairn}),
 				found: hang1("A", truth{skew: -0.3, tilt: -0.3, azimuth: 213}), left: hang1("A", truth{skew: -0.3, tilt: -0.3, azimuth: 213}),
 				angles: goodLevel, bearing: &compass,
-				searches: []searchRun{{antenna: "A", axis: "azimuth", from: 210.6, to: 215.4, step: 0.6, top: 213, width: 2.8, peak: -62.5}},
+				searches: []searchRun{{antenna: "A", axis: "azimuth", from: 210.6, to: 215.4, step: 0.6, top: 213, width: 2.8, peak: -62.5,
+					beamwidth: 5.6, expected: -42.4, doubt: 1.6}},
 				pages: []pageRun{
 					pageOf("near", 2, 1, figures("1", -63, 9, 9, 20), figures("2", -63, 9, 10, 19)),
 					pageOf("far", 2, 1, figures("1", -63, 10, 10, 21), figures("2", -64, 9, 9, 20)),

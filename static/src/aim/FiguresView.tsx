@@ -28,13 +28,15 @@ export function FiguresTable({ predicted, caption }: { predicted: readonly Predi
           const { unit, decimals } = mannerOf(p.figure);
           return (
             <tr key={`${p.end} ${p.port} ${p.figure}`}>
-              <th scope="row">{p.port ? say('figures.of-port', { port: p.port, figure: figureName(p.figure) }) : figureName(p.figure)}</th>
+              <th scope="row">
+                {p.port ? say('figures.of-port', { port: p.port, figure: figureName(p.figure) }) : figureName(p.figure)}
+                {unit && `, ${unit}`}
+              </th>
               <td class="number">
                 {figure(p.predicted, decimals)} ± {figure(p.u, p.u < 2 ? 1 : 0)}
               </td>
               <td class="number" data-off={off}>
                 {figure(p.measured, decimals)}
-                {unit && `\u00a0${unit}`}
                 {off && <span class="off-mark">{say(p.measured < p.predicted ? 'figures.low' : 'figures.high')}</span>}
               </td>
             </tr>
@@ -65,11 +67,6 @@ const names = {
 export function figureName(name: string): string {
   const key = names[name as keyof typeof names];
   return key ? say(key) : name.replace(/_/g, ' ');
-}
-
-/** What a sound link would show. */
-export function soundLink(ranking: FaultRanking): readonly PredictedFigure[] | null {
-  return ranking.expected ?? ranking.candidates.find((c) => c.code === 'nothing_stands_out')?.predicts ?? null;
 }
 
 export function Candidates({ ranking }: { ranking: FaultRanking }) {

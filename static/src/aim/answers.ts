@@ -146,7 +146,7 @@ export interface Candidate {
 export interface FaultRanking {
   candidates: Candidate[];
   /** What a sound link would show, whatever is ranked. */
-  expected?: PredictedFigure[];
+  expected: PredictedFigure[];
   none_fits: boolean;
   remarks: string[];
   method: Method;

@@ -54,8 +54,14 @@ export function CompassRose({ marks }: { marks: readonly RoseMark[] }) {
           <Mark key={i} mark={mark} at={at} r={r} />
         ))}
         <circle class="point" cx={middle} cy={cy} r="5" />
-        {labels.map(({ mark, x, y, anchor }, i) => (
-          <text key={i} class={`over${mark.kind === 'target' || mark.kind === 'reading' ? ' strong' : ''}`} x={x} y={y} text-anchor={anchor}>
+        {labels.map(
+          ({ led, from, box }, i) =>
+            led && (
+              <line key={i} class="grid led" x1={from[0]} y1={from[1]} x2={Math.max(box.left, Math.min(box.right, from[0]))} y2={Math.max(box.top, Math.min(box.bottom, from[1]))} />
+            ),
+        )}
+        {labels.map(({ mark, x, y }, i) => (
+          <text key={i} class={`over${mark.kind === 'target' || mark.kind === 'reading' ? ' strong' : ''}`} x={x} y={y} text-anchor="middle">
             {mark.label}
           </text>
         ))}
@@ -84,7 +90,7 @@ function Mark({ mark, at, r }: { mark: RoseMark; at: (bearing: number, radius: n
       return (
         <>
           {wide > 0.3 && <path class="zone" d={`M${cx} ${cy} L${x1} ${y1} A${r - 2} ${r - 2} 0 0 1 ${x2} ${y2} Z`} />}
-          <line class="bad" x1={cx} y1={cy} x2={x} y2={y} />
+          <line class="steel-line" x1={cx} y1={cy} x2={x} y2={y} />
           <rect class="point left-out" x={x - 8} y={y - 8} width="16" height="16" transform={turn} />
         </>
       );
@@ -105,29 +111,36 @@ function Mark({ mark, at, r }: { mark: RoseMark; at: (bearing: number, radius: n
   }
 }
 
-/** Words inside the ring, each beside its mark, the next ring inwards where two would lie on each other. */
+/** Words inside the ring, each as near to its mark as the others leave room. */
 function placeLabels(marks: readonly RoseMark[], at: (bearing: number, radius: number) => [number, number], r: number) {
-  const taken: Box[] = [];
+  const taken: Box[] = marks.map((mark) => {
+    const [x, y] = at(mark.bearing_deg, r);
+    return { left: x - 12, right: x + 12, top: y - 12, bottom: y + 12 };
+  });
+  const [cx, cy] = at(0, 0);
+  taken.push({ left: cx - 8, right: cx + 8, top: cy - 8, bottom: cy + 8 });
   return marks.map((mark) => {
-    const s = Math.sin((mark.bearing_deg * Math.PI) / 180);
-    const anchor = s > 0.3 ? ('end' as const) : s < -0.3 ? ('start' as const) : ('middle' as const);
     const wide = mark.label.length * 10;
-    let best: { x: number; y: number; box: Box } | null = null;
-    for (let radius = r - 24; radius > 12; radius -= 12) {
-      for (const shift of [0, 20, -20]) {
-        const [x, y0] = at(mark.bearing_deg, radius);
-        const y = y0 + 6 + shift;
-        const left = anchor === 'end' ? x - wide : anchor === 'start' ? x : x - wide / 2;
-        const box = { left, right: left + wide, top: y - 17, bottom: y + 4 };
-        if (taken.some((t) => t.left < box.right && box.left < t.right && t.top < box.bottom && box.top < t.bottom)) continue;
-        best = { x, y, box };
-        break;
+    const [mx, my] = at(mark.bearing_deg, r);
+    let best: { x: number; y: number; box: Box; far: number } | null = null;
+    for (let radius = r - 22; radius > 10; radius -= 11) {
+      for (let turn = -60; turn <= 60; turn += 10) {
+        const [px, py] = at(mark.bearing_deg + turn, radius);
+        // The word's near edge lies on the point: words left of the middle begin there, words right of it end there.
+        const lean = Math.max(-1, Math.min(1, (px - cx) / (r * 0.6)));
+        const x = px - (lean * wide) / 2;
+        const box = { left: x - wide / 2, right: x + wide / 2, top: py - 12, bottom: py + 10 };
+        const inside = [box.left, box.right].every((bx) => [box.top, box.bottom].every((by) => Math.hypot(bx - cx, by - cy) < r - 8));
+        if (!inside || taken.some((t) => t.left < box.right && box.left < t.right && t.top < box.bottom && box.top < t.bottom)) continue;
+        const nearX = Math.max(box.left, Math.min(box.right, mx));
+        const nearY = Math.max(box.top, Math.min(box.bottom, my));
+        const far = Math.hypot(nearX - mx, nearY - my);
+        if (best === null || far < best.far) best = { x, y: py + 6, box, far };
       }
-      if (best) break;
     }
-    const [x, y] = at(mark.bearing_deg, r - 24);
-    const found = best ?? { x, y, box: { left: x, right: x + wide, top: y - 17, bottom: y + 4 } };
+    const [x, y] = at(mark.bearing_deg, r - 40);
+    const found = best ?? { x, y, box: { left: x - wide / 2, right: x + wide / 2, top: y - 12, bottom: y + 10 }, far: 0 };
     taken.push(found.box);
-    return { mark, x: found.x, y: found.y, anchor };
+    return { mark, x: found.x, y: found.y, led: found.far > 26, from: [mx, my] as const, box: found.box };
   });
 }

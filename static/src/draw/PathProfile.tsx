@@ -80,14 +80,14 @@ export function PathProfile({ path, nearHeight, farHeight, near, far, most = 300
   );
 }
 
-/** One obstacle, numbered as in the list under the picture. One that takes something is hatched and crossed, not only coloured. */
+/** One obstacle, numbered as in the list under the picture. One that takes something is crossed through, not only coloured. */
 function Standing({ n, x, foot, top: head, bad }: { n: number; x: number; foot: number; top: number; bad: boolean }) {
-  const w = 9;
+  const w = 10;
   return (
     <>
-      <path class={bad ? 'bad' : 'steel-line'} d={`M${x - w} ${foot} V${head} H${x + w} V${foot}`} />
+      <path class={`post ${bad ? 'bad' : 'steel-line'}`} d={`M${x - w} ${foot} V${head} H${x + w} V${foot}`} />
       {bad && <path class="bad" d={`M${x - w} ${head} L${x + w} ${foot} M${x + w} ${head} L${x - w} ${foot}`} />}
-      <text class={`over strong${bad ? ' off' : ''}`} x={x} y={head - 8} text-anchor="middle">
+      <text class={`over strong${bad ? ' off' : ''}`} x={x} y={foot - head > 34 ? foot - 10 : head - 8} text-anchor="middle">
         {n}
       </text>
     </>

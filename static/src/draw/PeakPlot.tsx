@@ -39,8 +39,8 @@ export function PeakPlot({ steps, answer, expected }: PeakPlotProps) {
   const x = (a: number) => left + ((a - from) / (to - from)) * (width - left - right);
   const y = (l: number) => top + ((high - l) / (high - low)) * (height - top - foot);
   const seen = curve.filter((c) => c.a >= from && c.a <= to && c.level >= low);
-  const levelStep = stepOf(high - low, 4);
-  const angleStep = stepOf(to - from, width < 340 ? 3 : 4);
+  const levelStep = stepOf(high - low, 5);
+  const angleStep = stepOf(to - from, width < 340 ? 4 : 6);
   const rows = marks(low, high, levelStep);
   const columns = marks(from, to, angleStep);
   const u = answer?.peak_u_deg ?? null;
@@ -110,9 +110,9 @@ function describe(n: number, answer: PeakAnswer | null): string {
   return say('peak.drawing', { n, angle: shortest(answer.peak_deg, 1), level: shortest(answer.peak_level_dbm, 1) });
 }
 
-/** A step of the kind 1, 2, 5 × 10ⁿ that gives about `count` marks. */
-function stepOf(span: number, count: number): number {
-  const wanted = span / count;
+/** The smallest step of the kind 1, 2, 5 × 10ⁿ that gives at most `most` marks. */
+function stepOf(span: number, most: number): number {
+  const wanted = span / most;
   const decade = 10 ** Math.floor(Math.log10(wanted));
   for (const step of [1, 2, 5]) if (step * decade >= wanted) return step * decade;
   return 10 * decade;

@@ -1,6 +1,6 @@
 // Radio figures of both ends: what was typed of each radio's page, predicted beside measured, and what may be wrong.
 import type { FaultRanking, PredictedFigure } from '../../aim/answers.ts';
-import { Candidates, FiguresTable, soundLink } from '../../aim/FiguresView.tsx';
+import { Candidates, FiguresTable } from '../../aim/FiguresView.tsx';
 import { ExpectedLevels } from '../../aim/PathView.tsx';
 import { faultQuestion } from '../../aim/questions.ts';
 import { controlOff, standingOf } from '../../aim/search.ts';
@@ -36,7 +36,7 @@ function Figures({ open, job: jobId, mount: mountId }: Address & { open: AimOpen
   const ranking = useReckoned<FaultRanking>(ask, 'fault.rank', question);
   const read = standingOf(entries, mountId, 'figures.read');
   const place = { job: jobId, mount: mountId };
-  const predicted = ranking.answer ? soundLink(ranking.answer) : null;
+  const predicted = ranking.answer?.expected ?? [];
   return (
     <Page
       title={say('figures.title')}
@@ -68,9 +68,15 @@ function Figures({ open, job: jobId, mount: mountId }: Address & { open: AimOpen
           {/^radio\./.test(ranking.problem.field) && <p>{say('figures.desk-mends')}</p>}
         </Message>
       )}
+      {ranking.answer && (
+        <section class="section stack" aria-labelledby="wrong-title">
+          <h2 id="wrong-title">{say('fault.title')}</h2>
+          <Candidates ranking={ranking.answer} />
+        </section>
+      )}
       {(['near', 'far'] as const).map((end) => {
         const last = read.filter((r) => r.body.end === end).pop();
-        const of: PredictedFigure[] = (predicted ?? []).filter((p) => p.end === end);
+        const of: PredictedFigure[] = predicted.filter((p) => p.end === end);
         return (
           <section class="section stack" key={end} aria-labelledby={`end-${end}`}>
             <h2 id={`end-${end}`}>{say(`figures.end.${end}`)}</h2>
@@ -80,12 +86,6 @@ function Figures({ open, job: jobId, mount: mountId }: Address & { open: AimOpen
           </section>
         );
       })}
-      {ranking.answer && (
-        <section class="section stack" aria-labelledby="wrong-title">
-          <h2 id="wrong-title">{say('fault.title')}</h2>
-          <Candidates ranking={ranking.answer} />
-        </section>
-      )}
     </Page>
   );
 }

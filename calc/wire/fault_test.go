@@ -134,7 +134,6 @@ func TestFaultRankByHand(t *testing.T) {
 	}
 }
 
-// Where the figures do not tell, the odds are shared and it is said.
 // What a sound link would show stands in every answer, also where the figures are so
 // far off that it is not listed among the candidates. By hand: −59.3 dBm.
 func TestFaultRankAlwaysTellsWhatASoundLinkShows(t *testing.T) {
@@ -156,6 +155,7 @@ func TestFaultRankAlwaysTellsWhatASoundLinkShows(t *testing.T) {
 	}
 }
 
+// Where the figures do not tell, the odds are shared and it is said.
 func TestFaultRankSharesTheOdds(t *testing.T) {
 	figures := `{"power_control_off":true,"near":{"ports":[{"port":"1","level_dbm":-77},{"port":"2","level_dbm":-77}]},"far":{"ports":[{"port":"1","level_dbm":-77},{"port":"2","level_dbm":-77}]}}`
 	first, list := best(t, faulty(t, figures, nil))

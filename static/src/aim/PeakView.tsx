@@ -38,7 +38,9 @@ export function PeakView({ axis, steps, answer, expected }: PeakViewProps) {
           {answer.lobe === 'side' && <Message tone="warn">{say('peak.side-warning')}</Message>}
           {answer.take_more.length > 0 ? (
             <div>
-              <h3>{say('peak.take-more')}</h3>
+              <p>
+                <strong>{say('peak.take-more')}</strong>
+              </p>
               <ul class="numbered">
                 {answer.take_more.map((want) => (
                   <li key={want.code}>{want.text}</li>

@@ -112,7 +112,7 @@ export function JobPageView({ id, mount, tab, newest, onDecided }: Props) {
       )}
       <JobHead heading={heading} page={page} record={record} shown={shown?.id ?? null} tab={tabOf(page.job.stage)} />
       {page.mounts.map((m) => (
-        <MountSection key={m.id} mount={m} record={record} shown={m.id === shown?.id} />
+        <MountSection key={m.id} mount={m} page={page} record={record} shown={m.id === shown?.id} />
       ))}
       <VisitSection page={page} record={record} />
       <LogSection opened={opened} record={record} />

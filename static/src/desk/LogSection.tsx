@@ -3,6 +3,7 @@
 import { useEffect, useState } from 'preact/hooks';
 import type { Entry } from '../types';
 import { deskTime, placeTime, shortHash } from './format';
+import { aimSaid } from './aimSaid.ts';
 import type { Opened } from './JobPageView';
 import { fingerprint, type JobRecord, type LogLine } from './record';
 import { t } from './words';
@@ -134,6 +135,6 @@ function said(entry: Entry): string {
     case 'job.signed_off':
       return t('desk.said.signed-off');
     default:
-      return (entry as { kind: string }).kind;
+      return aimSaid(entry) ?? (entry as { kind: string }).kind;
   }
 }

@@ -11,6 +11,7 @@ import { NumberField } from './NumberField';
 import { PlanCheck, usePlanCheck } from './PlanCheck';
 import { repath, sheetFrom, sheetIn, sheetText, type Template, templates, usualLimits } from './sheets';
 import { SurroundingFields } from './SurroundingFields';
+import { SurveyFields } from './SurveyFields.tsx';
 import { TextField } from './TextField';
 import { t } from './words';
 
@@ -129,6 +130,7 @@ export function MountForm({ mount, place, nameMissing, onChange, onFit, onRemove
                 {number('elevation', '°', sheet.path.elevation_deg, (s, v) => repath(s, s.path.bearing_deg, v), ['path.elevation_deg'], { hint: t('desk.field.elevation-hint') })}
                 {number('distance', 'm', sheet.path.distance_m, (s, v) => (s.path.distance_m = v), ['path.distance_m'])}
               </fieldset>
+              <SurveyFields id={id('survey')} sheet={sheet} edit={edit} problemAt={problemAt} onUnread={onUnread} />
               <AntennaFields sheet={sheet} end="near" number={number} />
               <AntennaFields sheet={sheet} end="far" number={number} />
               <SurroundingFields id={id('around')} sheet={sheet} edit={edit} problemAt={problemAt} onUnread={onUnread} />

@@ -1,5 +1,6 @@
 // One mount of the job: what it came to, three drawings, limits, remedies, what it was judged with, its readings.
 
+import { AimSection } from './AimSection.tsx';
 import { WordMark } from '../parts/WordMark';
 import type { JobPage } from '../types';
 import { percent } from './format';
@@ -13,11 +14,12 @@ import { t } from './words';
 
 interface Props {
   mount: JobPage['mounts'][number];
+  page: JobPage;
   record: JobRecord;
   shown: boolean;
 }
 
-export function MountSection({ mount, record, shown }: Props) {
+export function MountSection({ mount, page, record, shown }: Props) {
   const { verdict, problem, sheet } = mount;
   return (
     // The mounts not looked at are kept for paper: a print holds the whole job.
@@ -54,6 +56,7 @@ export function MountSection({ mount, record, shown }: Props) {
         </>
       )}
       <ReadingsTable mount={mount.id} record={record} />
+      <AimSection mount={mount} page={page} record={record} />
     </section>
   );
 }

@@ -166,6 +166,11 @@ export function invite(role: Role, crew: string | null): Promise<Invitation> {
   return call('POST', '/api/people/invitations', { role, crew });
 }
 
+/** One operation of calc. Throws ApiProblem with the field that is wrong. */
+export function reckon<T>(op: string, input: unknown): Promise<T> {
+  return call('POST', `/api/calc/${encodeURIComponent(op)}`, input);
+}
+
 /** The verdict on a sheet as it stands. Throws ApiProblem with the field that is wrong. */
 export function judge(sheet: Sheet): Promise<Verdict> {
   return call('POST', '/api/calc/mount.verdict', sheet);

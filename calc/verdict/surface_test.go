@@ -32,6 +32,28 @@ func TestSurfaceIsTheComputation(t *testing.T) {
 			a.Deg, a.UDeg = 75, 2
 			s.Limits = []sheet.Limit{{Name: sheet.ChainImbalance, Value: 2.4}}
 		}},
+		{"an aim read badly", "crossed-pair-skewed-combining", false, func(s *sheet.Sheet) { // bends
+			a := &s.Near.Antennas[0]
+			a.Azimuth.AsLeft[0].UDeg, a.Tilt.AsLeft[0].UDeg = 10, 1.5
+			s.Limits = []sheet.Limit{{Name: sheet.RateShare, AtLeast: true, Value: 0.97}}
+		}},
+		{"skews of both ends read badly", "two-crossed-panels", false, func(s *sheet.Sheet) { // bends in their sum
+			s.Radio.Combining, s.Radio.TxPowerDBm = false, nil
+			*s.Surroundings.Spreads.KDB = 30
+			for _, end := range []struct {
+				m    *sheet.Mount
+				keep [2]int
+			}{{&s.Near, [2]int{0, 1}}, {&s.Far, [2]int{1, 0}}} {
+				for i := range end.m.Antennas {
+					a := &end.m.Antennas[i]
+					a.Elements = a.Elements[end.keep[i] : end.keep[i]+1]
+				}
+			}
+			s.Near.Antennas[1].Skew.AsLeft = []sheet.Angle{{Deg: 14, UDeg: 2, How: sheet.How{Method: "level"}}}
+			s.Far.Antennas[0].Skew.AsLeft = []sheet.Angle{{Deg: 6, UDeg: 3, How: sheet.How{Method: "level"}}}
+			s.Far.Antennas[1].Skew.AsLeft = []sheet.Angle{{Deg: 6, UDeg: 3, How: sheet.How{Method: "level"}}}
+			s.Limits = []sheet.Limit{{Name: sheet.ChainImbalance, Value: 0.5}}
+		}},
 		{"phases that turn over", "two-crossed-panels", true, func(s *sheet.Sheet) {
 			s.Limits = []sheet.Limit{{Name: sheet.EffectiveStreams, AtLeast: true, Value: 3.8}}
 		}},

@@ -9,6 +9,7 @@ import (
 
 	"crossplumb/calc/codec"
 	"crossplumb/calc/sheet"
+	"crossplumb/calc/stream"
 	"crossplumb/calc/verdict"
 )
 
@@ -132,6 +133,10 @@ func TestAMissingReadingIsNeverGo(t *testing.T) {
 	}
 	if v.Reason.Code != verdict.MissingReading && v.Word != verdict.NoGo {
 		t.Errorf("reason %+v", v.Reason)
+	}
+	s.Limits = []sheet.Limit{{Name: sheet.SkewDeviation, Value: 10}} // which the tilt has no part in
+	if v := judged(t, s); v.Word != verdict.MeasureAgain || v.Probability < verdict.Guard || v.Reason.Code != verdict.MissingReading {
+		t.Errorf("all limits hold, the tilt is not measured: %s (%.3f), %+v", v.Word, v.Probability, v.Reason)
 	}
 	s = job(t, "crossed-pair-go")
 	for _, st := range []*sheet.AngleStates{&s.Near.Antennas[0].Skew, &s.Near.Antennas[0].Tilt, &s.Near.Antennas[0].Azimuth} {
@@ -279,6 +284,35 @@ func TestBearingsPoolAcrossNorth(t *testing.T) {
 	v := judged(t, s)
 	if got := v.Geometry.Antennas[0].AsLeft.AzimuthDeg; math.Min(got, 360-got) > 1e-9 {
 		t.Errorf("359° and 1° pool to %g°", got)
+	}
+}
+
+// TestAnOmniLeansForward: an omni's tilt is its lean to the front, which lowers its
+// beam there: toward a far end above it loses, toward one below it gains. Both the
+// pointing loss and the bodies of the stream computation take it so.
+func TestAnOmniLeansForward(t *testing.T) {
+	for _, row := range []struct{ rise, want float64 }{{5, 12 * 10 * 10 / (22.0 * 22)}, {-5, 0}} {
+		s := job(t, "two-omnis-half-wavelength")
+		s.Limits = []sheet.Limit{{Name: sheet.PointingLoss, Value: 1}}
+		s.Path.ElevationDeg = row.rise
+		for i := range s.Near.Antennas {
+			s.Near.Antennas[i].Tilt.AsLeft = []sheet.Angle{level(5, 0.05, "level 3")}
+			s.Near.Antennas[i].Skew.AsLeft = []sheet.Angle{level(0, 0.05, "level 3")}
+		}
+		if got := *outcome(t, judged(t, s), sheet.PointingLoss).Value; math.Abs(got-row.want) > 0.06 {
+			t.Errorf("leaning 5° forward, far end at %g°: %.3f dB, want %.3f", row.rise, got, row.want)
+		}
+		link, p := verdict.NewLink(s)
+		if p != nil {
+			t.Fatal(p)
+		}
+		e, err := stream.New(link.Setup, link.Near[sheet.AsLeft], link.Far[sheet.AsLeft])
+		if err != nil {
+			t.Fatal(err)
+		}
+		if got := e.Planned().NearPointing[0]; math.Abs(got-row.want) > 0.01 {
+			t.Errorf("the stream computation, far end at %g°: %.3f dB, want %.3f", row.rise, got, row.want)
+		}
 	}
 }
 

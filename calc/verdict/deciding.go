@@ -88,3 +88,12 @@ func (j *judge) deciding(b *belief) *Deciding {
 	}
 	return d
 }
+
+// farDecides tells whether a word would come out if the far end were known exactly.
+func (j *judge) farDecides(b *belief) bool {
+	c := j.with(b, 0, skew, 1)
+	for at := j.at(j.near, 0); at < len(c.est); at++ {
+		c.est[at] = b.est[at].Scale(0)
+	}
+	return firmness(j.runEvery(c, 4).joint) >= Guard
+}

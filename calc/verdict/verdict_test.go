@@ -5,6 +5,7 @@ import (
 	"math"
 	"os"
 	"path/filepath"
+	"strings"
 	"testing"
 
 	"crossplumb/calc/codec"
@@ -195,6 +196,20 @@ func TestDecidingReading(t *testing.T) {
 	s.Near.Antennas[0].Skew.AsLeft[0].UDeg = *d.UNeeded * 1.1
 	if w := judged(t, s); w.Word != verdict.MeasureAgain {
 		t.Errorf("with ±%.3f° already %s (%.3f)", *d.UNeeded*1.1, w.Word, w.Probability)
+	}
+}
+
+// TestTheFarEndDecides: where the near readings are good and the far end is its
+// plan, no near reading is blamed.
+func TestTheFarEndDecides(t *testing.T) {
+	s := job(t, "crossed-pair-go")
+	s.Limits = []sheet.Limit{{Name: sheet.CrossTalk, AtLeast: true, Value: 24.5}}
+	s.Near.Antennas[0].Skew.AsLeft = []sheet.Angle{level(0.1, 0.05, "level 3")}
+	f := &s.Far.Antennas[0]
+	f.Skew.AsLeft, f.Tilt.AsLeft, f.Azimuth.AsLeft = nil, nil, nil
+	v := judged(t, s)
+	if v.Word != verdict.MeasureAgain || v.Deciding != nil || !v.FarFromPlan || !strings.Contains(v.Reason.Text, "the far end decides") {
+		t.Errorf("%s (%.3f), deciding %+v: %s", v.Word, v.Probability, v.Deciding, v.Reason.Text)
 	}
 }
 

@@ -164,6 +164,8 @@ func (j *judge) reason(v *Verdict, b *belief, o *outcome) Reason {
 				r.Text += ", ±" + figures(*d.UNeeded) + unit + " will do"
 			}
 			r.Text += "."
+		} else if j.farDecides(b) {
+			r.Text = sentence(&v.Limits[k]) + ": the far end decides, whose readings are not here or not close enough."
 		}
 	}
 	return r

@@ -328,6 +328,7 @@ test('a crossed pair, from mast to sign-off, with the server killed in the middl
     await desk.getByRole('button', { name: 'Sign off' }).click();
     await desk.getByText(`Signed off by ${SUPERVISOR.name}`).first().waitFor();
     await picture(desk, 'desk-05-signed-off');
+    await page.evaluate(() => dispatchEvent(new Event('focus'))); // somebody looks at the phone: it asks at once
     await page.getByText('Signed off. Nothing more to do here.').first().waitFor({ timeout: 60_000 });
     await picture(page, 'phone-14-signed-off');
     const rows = await onPhone(page);

@@ -51,9 +51,16 @@ type Receipt struct {
 }
 
 // Append takes a batch into the log in one transaction: afterwards all of it is on disk or none. The same batch again,
-// whole or in part, from as many sides at once as may be, changes nothing and is answered with the same numbers.
+// whole or in part, from as many sides at once as may be, changes nothing and is answered with the same numbers. What
+// was set apart before is looked at anew: when what stood against it is gone, it goes into the log.
 // sentMs is the device's clock when it sent (0 = unknown), kept to tell how far clocks are apart; nothing is ordered by it.
 func (s *Store) Append(ctx context.Context, by Person, sentMs int64, batch []Incoming) (Receipt, error) {
+	arrivals := make([]arrival, len(batch))
+	for i, in := range batch {
+		if err := arrivals[i].read(in); err != nil {
+			return Receipt{}, err
+		}
+	}
 	var r Receipt
 	err := s.inTx(ctx, func(tx *sql.Tx) error {
 		w, err := s.newWriter(ctx, tx, by, sentMs)
@@ -61,62 +68,75 @@ func (s *Store) Append(ctx context.Context, by Person, sentMs int64, batch []Inc
 			return err
 		}
 		answers := make([]Answer, len(batch))
-		for _, i := range deviceOrder(batch) {
-			if answers[i], err = w.take(batch[i]); err != nil {
+		for _, i := range deviceOrder(arrivals) {
+			if answers[i], err = w.take(arrivals[i]); err != nil {
 				return err
 			}
 		}
-		r = Receipt{Answers: answers, Epoch: w.epoch, Head: w.head, Jobs: w.jobs}
-		return nil
+		r = Receipt{Answers: answers, Epoch: w.epoch, Head: w.head, Jobs: w.jobsGrown}
+		return w.flush()
 	})
-	return r, err
+	if err != nil {
+		return Receipt{}, err
+	}
+	return r, nil
+}
+
+// arrival is an entry as it came, read once.
+type arrival struct {
+	Incoming
+	hash    string // of the text as it came
+	entry   Entry
+	content any
+	refusal *Refusal // why it cannot be read
+}
+
+func (a *arrival) read(in Incoming) error {
+	a.Incoming, a.hash = in, HashOf(in.Raw)
+	var err error
+	a.entry, a.content, err = readEntry(in.Raw)
+	if err != nil && !errors.As(err, &a.refusal) {
+		return err
+	}
+	return nil
 }
 
 // deviceOrder is the order in which a batch is taken: a device's entries by their own numbers, whatever order the
 // network gave them, devices in the order of their first entry.
-func deviceOrder(batch []Incoming) []int {
-	type place struct {
-		device string
-		seq    int64
-		first  int
-	}
-	places := make([]place, len(batch))
+func deviceOrder(batch []arrival) []int {
 	first := map[string]int{}
-	for i, in := range batch {
-		e, _ := ReadEntry(in.Raw)
-		if _, seen := first[e.Device]; !seen {
-			first[e.Device] = i
-		}
-		places[i] = place{e.Device, e.DeviceSeq, first[e.Device]}
-	}
 	order := make([]int, len(batch))
-	for i := range order {
+	for i, a := range batch {
 		order[i] = i
-	}
-	sort.SliceStable(order, func(a, b int) bool {
-		p, q := places[order[a]], places[order[b]]
-		if p.first != q.first {
-			return p.first < q.first
+		if _, seen := first[a.entry.Device]; !seen {
+			first[a.entry.Device] = i
 		}
-		return p.seq < q.seq
+	}
+	sort.SliceStable(order, func(i, k int) bool {
+		p, q := batch[order[i]].entry, batch[order[k]].entry
+		if first[p.Device] != first[q.Device] {
+			return first[p.Device] < first[q.Device]
+		}
+		return p.DeviceSeq < q.DeviceSeq
 	})
 	return order
 }
 
 // writer is one writing transaction on the log.
 type writer struct {
-	ctx    context.Context
-	tx     *sql.Tx
-	by     Person
-	nowMs  int64
-	sentMs sql.NullInt64
-	epoch  int64
-	head   Head
-	jobs   []string
+	*deriver
+	by        Person
+	nowMs     int64
+	sentMs    sql.NullInt64
+	epoch     int64
+	head      Head
+	jobsGrown []string
+	authors   map[string]*Person // nil: nobody
 }
 
 func (s *Store) newWriter(ctx context.Context, tx *sql.Tx, by Person, sentMs int64) (*writer, error) {
-	w := &writer{ctx: ctx, tx: tx, by: by, nowMs: s.nowMs(), sentMs: sql.NullInt64{Int64: sentMs, Valid: sentMs != 0}}
+	w := &writer{deriver: newDeriver(ctx, tx), by: by, nowMs: s.nowMs(),
+		sentMs: sql.NullInt64{Int64: sentMs, Valid: sentMs != 0}, authors: map[string]*Person{}}
 	var err error
 	if w.epoch, err = epoch(ctx, tx); err != nil {
 		return nil, err
@@ -126,86 +146,63 @@ func (s *Store) newWriter(ctx context.Context, tx *sql.Tx, by Person, sentMs int
 }
 
 // take stores one entry, or recognises it, or sets it apart. The error is of the database; a bad entry is an Answer.
-func (w *writer) take(in Incoming) (Answer, error) {
-	e, err := ReadEntry(in.Raw)
-	answer := Answer{ID: e.ID}
-	raw := HashOf(in.Raw)
-	var refusal *Refusal
-	switch {
-	case err != nil && !errors.As(err, &refusal):
-		return answer, err
-	case raw != in.Hash:
+func (w *writer) take(a arrival) (Answer, error) {
+	answer := Answer{ID: a.entry.ID}
+	refusal := a.refusal
+	if a.hash != a.Hash {
 		// Before anything else: of bytes that are not what the device hashed, nothing can be believed.
 		refusal = refuse(HashMismatch, "the hash sent with the entry is not the hash of its text")
-	case refusal == nil:
-		seq, known, err := w.known(e, raw)
-		if err != nil {
-			return answer, err
-		}
-		if known {
-			answer.Status, answer.Seq = Duplicate, seq
-			return answer, nil
-		}
-	}
-	if answer, done, err := w.knownApart(answer, raw, in.Hash); done || err != nil {
-		return answer, err
 	}
 	if refusal == nil {
-		if refusal, err = w.objection(e, raw); err != nil {
+		seq, stored, err := w.known(a.entry.ID)
+		switch {
+		case err != nil:
+			return answer, err
+		case stored == a.hash:
+			answer.Status, answer.Seq = Duplicate, seq
+			return answer, nil
+		case stored != "":
+			refusal = refuse(IDReused, "an entry with this id and other content is in the log")
+		}
+	}
+	var err error
+	if refusal == nil {
+		if refusal, err = w.objection(a.entry, a.content, a.hash); err != nil {
 			return answer, err
 		}
 	}
-	if refusal == nil && in.Objection != "" {
-		refusal = refuse(Unreadable, "%s", in.Objection)
+	if refusal == nil && a.Objection != "" {
+		refusal = refuse(Unreadable, "%s", a.Objection)
 	}
 	if refusal != nil {
 		answer.Status, answer.Code, answer.Reason = Quarantined, refusal.Code, refusal.Reason
-		return answer, w.setApart(e, in, raw, refusal)
+		return answer, w.setApart(a, refusal)
 	}
 	answer.Status = Stored
-	answer.Seq, err = w.store(e, in.Raw, raw)
+	answer.Seq, err = w.store(a.entry, a.content, a.Raw, a.hash)
 	return answer, err
 }
 
-// known finds the very same entry in the log.
-func (w *writer) known(e Entry, hash string) (seq int64, same bool, err error) {
-	var stored string
-	err = w.tx.QueryRowContext(w.ctx, "SELECT seq, hash FROM entries WHERE id = ?", e.ID).Scan(&seq, &stored)
+// known finds an id in the log; hash is "" when it is not there.
+func (w *writer) known(id string) (seq int64, hash string, err error) {
+	err = w.row("SELECT seq, hash FROM entries WHERE id = ?", id).Scan(&seq, &hash)
 	if err == sql.ErrNoRows {
-		return 0, false, nil
+		err = nil
 	}
-	return seq, err == nil && stored == hash, err
-}
-
-// knownApart finds the very same delivery in quarantine: it gets the same answer again and is not kept twice.
-func (w *writer) knownApart(answer Answer, rawHash, claimed string) (Answer, bool, error) {
-	err := w.tx.QueryRowContext(w.ctx,
-		"SELECT code, reason FROM quarantine WHERE raw_hash = ? AND claimed_hash = ?", rawHash, clipHash(claimed)).
-		Scan(&answer.Code, &answer.Reason)
-	if err == sql.ErrNoRows {
-		return answer, false, nil
-	}
-	answer.Status = Quarantined
-	return answer, err == nil, err
+	return seq, hash, err
 }
 
 // objection is why a well-formed entry cannot be in the log, or nil.
-func (w *writer) objection(e Entry, hash string) (*Refusal, error) {
-	var other string
-	switch err := w.tx.QueryRowContext(w.ctx, "SELECT hash FROM entries WHERE id = ?", e.ID).Scan(&other); {
-	case err == nil: // known() has seen to the case that it is the same
-		return refuse(IDReused, "an entry with this id and other content is in the log"), nil
-	case err != sql.ErrNoRows:
-		return nil, err
-	}
+func (w *writer) objection(e Entry, content any, hash string) (*Refusal, error) {
 	if refusal, err := w.chainObjection(e, hash); refusal != nil || err != nil {
 		return refusal, err
 	}
-	author, err := personByID(w.ctx, w.tx, e.Author)
-	if err == ErrNotFound {
-		return refuse(UnknownAuthor, "nobody has the id %q", clip(e.Author)), nil
-	} else if err != nil {
+	author, err := w.author(e.Author)
+	if err != nil {
 		return nil, err
+	}
+	if author == nil {
+		return refuse(UnknownAuthor, "nobody has the id %q", clip(e.Author)), nil
 	}
 	if e.supervisorOnly() {
 		// What a supervisor decides is uploaded by the same supervisor; nobody carries it for him.
@@ -213,7 +210,23 @@ func (w *writer) objection(e Entry, hash string) (*Refusal, error) {
 			return refuse(NotAllowed, "%s is for a supervisor to write", e.Kind), nil
 		}
 	}
-	return w.jobObjection(e)
+	return w.jobObjection(e, content)
+}
+
+func (w *writer) author(id string) (*Person, error) {
+	if p, asked := w.authors[id]; asked {
+		return p, nil
+	}
+	p, err := personByID(w.ctx, w.tx, id)
+	switch {
+	case err == ErrNotFound:
+		w.authors[id] = nil
+	case err != nil:
+		return nil, err
+	default:
+		w.authors[id] = &p
+	}
+	return w.authors[id], nil
 }
 
 func (e Entry) supervisorOnly() bool {
@@ -228,43 +241,55 @@ func (e Entry) supervisorOnly() bool {
 // still come, and State says what is missing. An entry whose neighbour was set apart is not measured by it: one bad
 // entry must not block those behind it.
 func (w *writer) chainObjection(e Entry, hash string) (*Refusal, error) {
-	neighbour := func(seq int64) (hash, prev string, err error) {
-		err = w.tx.QueryRowContext(w.ctx, "SELECT hash, prev FROM entries WHERE device = ? AND device_seq = ?",
-			e.Device, seq).Scan(&hash, &prev)
-		if err == sql.ErrNoRows {
-			err = nil
+	d, err := w.device(e.Device)
+	if err != nil {
+		return nil, err
+	}
+	if e.DeviceSeq > d.highest {
+		// Nothing of this number or after it ever came, so only the one before can stand against it.
+		before, _, err := w.onDevice(e.Device, e.DeviceSeq-1, d)
+		if err != nil {
+			return nil, err
 		}
-		return
+		if before != "" && before != e.Prev {
+			return refuse(ChainBroken, "the entry before it on this device has another hash than prev says"), nil
+		}
+		return nil, nil
 	}
-	taken, _, err := neighbour(e.DeviceSeq)
-	if err != nil {
-		return nil, err
+	var hashes, prevs [3]string
+	for i := range hashes {
+		if hashes[i], prevs[i], err = w.onDevice(e.Device, e.DeviceSeq-1+int64(i), nil); err != nil {
+			return nil, err
+		}
 	}
-	if taken != "" {
+	switch {
+	case hashes[1] != "":
 		return refuse(DeviceSeqReused, "this device wrote another entry with number %d", e.DeviceSeq), nil
-	}
-	before, _, err := neighbour(e.DeviceSeq - 1)
-	if err != nil {
-		return nil, err
-	}
-	if before != "" && before != e.Prev {
+	case hashes[0] != "" && hashes[0] != e.Prev:
 		return refuse(ChainBroken, "the entry before it on this device has another hash than prev says"), nil
-	}
-	after, prev, err := neighbour(e.DeviceSeq + 1)
-	if err != nil {
-		return nil, err
-	}
-	if after != "" && prev != hash {
+	case hashes[2] != "" && prevs[2] != hash:
 		return refuse(ChainBroken, "the entry after it on this device follows another one"), nil
 	}
 	return nil, nil
 }
 
-func (w *writer) jobObjection(e Entry) (*Refusal, error) {
+// onDevice finds a device's entry in the log; hash is "" when it is not there. last, if given, may know it.
+func (w *writer) onDevice(device string, seq int64, last *deviceState) (hash, prev string, err error) {
+	if last != nil && last.storedSeq == seq && seq > 0 {
+		return last.storedHash, "", nil
+	}
+	err = w.row("SELECT hash, prev FROM entries WHERE device = ? AND device_seq = ?", device, seq).Scan(&hash, &prev)
+	if err == sql.ErrNoRows {
+		err = nil
+	}
+	return hash, prev, err
+}
+
+func (w *writer) jobObjection(e Entry, content any) (*Refusal, error) {
 	if e.Job == "" {
 		return refuse(UnknownJob, "the entry belongs to no job"), nil
 	}
-	job, err := jobByID(w.ctx, w.tx, e.Job)
+	job, err := w.job(e.Job)
 	switch {
 	case err == ErrNotFound && e.Kind == JobPlanned:
 		return nil, nil
@@ -272,7 +297,7 @@ func (w *writer) jobObjection(e Entry) (*Refusal, error) {
 		return refuse(UnknownJob, "no such job is known here"), nil
 	case err != nil:
 		return nil, err
-	case !w.by.MaySee(job):
+	case !w.by.MaySee(job.Job):
 		// In the same words as for a job that is not there: a stranger does not learn that it is.
 		return refuse(UnknownJob, "no such job is known here"), nil
 	case e.Kind == JobPlanned:
@@ -281,26 +306,21 @@ func (w *writer) jobObjection(e Entry) (*Refusal, error) {
 		return refuse(SignedOff, "the job was signed off before this arrived"), nil
 	}
 	if e.Mount != "" {
-		var there int
-		if err := w.tx.QueryRowContext(w.ctx, "SELECT count(*) FROM mounts WHERE job = ? AND id = ?", e.Job, e.Mount).
-			Scan(&there); err != nil {
-			return nil, err
-		}
-		if there == 0 {
-			return refuse(UnknownMount, "the job has no mount %q", clip(e.Mount)), nil
-		}
-	}
-	if e.Kind == JobSentBack || e.Kind == JobSignedOff {
-		content, err := e.ReadBody()
+		there, err := w.hasMount(job, e.Mount)
 		if err != nil {
 			return nil, err
 		}
+		if !there {
+			return refuse(UnknownMount, "the job has no mount %q", clip(e.Mount)), nil
+		}
+	}
+	if decision, is := content.(*Decision); is {
 		if job.Stage != StageHandedIn {
 			return refuse(NotHandedIn, "the job is not handed in, it is %s", job.Stage), nil
 		}
-		if base := content.(*Decision).BaseSeq; base != job.StageSeq {
+		if decision.BaseSeq != job.StageSeq {
 			return refuse(Stale, "the job has changed since: the decision was made on %d, the job stands at %d",
-				base, job.StageSeq), nil
+				decision.BaseSeq, job.StageSeq), nil
 		}
 	}
 	return nil, nil
@@ -319,10 +339,10 @@ func ChainHash(before string, seq, receivedMs int64, uploader, raw string) strin
 	return hex.EncodeToString(h.Sum(nil))
 }
 
-func (w *writer) store(e Entry, raw, hash string) (int64, error) {
+func (w *writer) store(e Entry, content any, raw, hash string) (int64, error) {
 	seq := w.head.Seq + 1
 	chain := ChainHash(w.head.Hash, seq, w.nowMs, w.by.ID, raw)
-	if _, err := w.tx.ExecContext(w.ctx, `
+	if err := w.exec(`
 		INSERT INTO entries (seq, id, device, device_seq, prev, hash, job, mount, kind, schema, author, uploader,
 			received_ms, sent_ms, raw, chain)
 		VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)`,
@@ -330,29 +350,25 @@ func (w *writer) store(e Entry, raw, hash string) (int64, error) {
 		w.nowMs, w.sentMs, raw, chain); err != nil {
 		return 0, fmt.Errorf("entry: %w", err)
 	}
-	if err := deriveFromEntry(w.ctx, w.tx, seq, e); err != nil {
-		return 0, err
-	}
-	if err := deriveReceipt(w.ctx, w.tx, e.Device, e.DeviceSeq, hash, w.by.ID, seq); err != nil {
+	if err := w.entered(seq, e, content, hash, w.by.ID); err != nil {
 		return 0, err
 	}
 	w.head = Head{Seq: seq, Hash: chain}
-	for _, job := range w.jobs {
-		if job == e.Job {
-			return seq, nil
-		}
+	if !among(e.Job, w.jobsGrown) {
+		w.jobsGrown = append(w.jobsGrown, e.Job)
 	}
-	w.jobs = append(w.jobs, e.Job)
 	return seq, nil
 }
 
-func (w *writer) setApart(e Entry, in Incoming, rawHash string, why *Refusal) error {
+// setApart keeps what cannot be in the log. The very same delivery is kept once.
+func (w *writer) setApart(a arrival, why *Refusal) error {
+	e := a.entry
 	// The job is noted only where the uploader may see it, so that nobody fills the lists of strangers' jobs.
-	job := ""
+	noted := ""
 	if e.Job != "" {
-		switch known, err := jobByID(w.ctx, w.tx, e.Job); {
-		case err == nil && w.by.MaySee(known):
-			job = e.Job
+		switch job, err := w.job(e.Job); {
+		case err == nil && w.by.MaySee(job.Job):
+			noted = e.Job
 		case err != nil && err != ErrNotFound:
 			return err
 		}
@@ -361,15 +377,19 @@ func (w *writer) setApart(e Entry, in Incoming, rawHash string, why *Refusal) er
 	if !isUUID(device, 0) || deviceSeq < 1 {
 		device, deviceSeq = "", 0
 	}
-	if _, err := w.tx.ExecContext(w.ctx, `
+	result, err := w.tx.ExecContext(w.ctx, `
 		INSERT INTO quarantine (id, device, device_seq, job, code, reason, author, uploader, received_ms, sent_ms,
 			claimed_hash, raw_hash, raw)
-		VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)`,
-		orNull(e.ID), orNull(device), sql.NullInt64{Int64: deviceSeq, Valid: deviceSeq > 0}, orNull(job), why.Code,
-		why.Reason, orNull(e.Author), w.by.ID, w.nowMs, w.sentMs, clipHash(in.Hash), rawHash, in.Raw); err != nil {
+		VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?) ON CONFLICT (raw_hash, claimed_hash) DO NOTHING`,
+		orNull(e.ID), orNull(device), sql.NullInt64{Int64: deviceSeq, Valid: deviceSeq > 0}, orNull(noted), why.Code,
+		why.Reason, orNull(e.Author), w.by.ID, w.nowMs, w.sentMs, clipHash(a.Hash), a.hash, a.Raw)
+	if err != nil {
 		return fmt.Errorf("quarantine: %w", err)
 	}
-	return deriveFromQuarantine(w.ctx, w.tx, job, device, deviceSeq, rawHash, w.by.ID)
+	if n, err := result.RowsAffected(); err != nil || n == 0 {
+		return err
+	}
+	return w.setAside(noted, device, deviceSeq, a.hash, w.by.ID)
 }
 
 func orNull(s string) sql.NullString { return sql.NullString{String: s, Valid: s != ""} }

@@ -97,7 +97,7 @@ func (b *bench) dump() string {
 		"SELECT n || raw_hash || code FROM quarantine ORDER BY n",
 		"SELECT id || stage || stage_seq || ' ' || head_seq || ' ' || readings_seq || ' ' || entries || ' ' || quarantined FROM jobs ORDER BY id",
 		"SELECT device || contiguous_seq || contiguous_hash || highest_seq FROM devices ORDER BY device",
-		"SELECT device || device_seq || hash || coalesce(seq, '-') FROM receipts ORDER BY device, device_seq",
+		"SELECT person || device FROM device_people ORDER BY person, device",
 	} {
 		rows, err := b.read.QueryContext(b.Context(), query)
 		if err != nil {
@@ -540,7 +540,13 @@ func TestABatchIsTakenInDeviceOrder(t *testing.T) {
 	p, q := newPhone(b.tam), newPhone(b.tam)
 	p1, p2 := p.write(b.job, NoteAdded, note("p1")), p.write(b.job, NoteAdded, note("p2"))
 	q1, q2 := q.write(b.job, NoteAdded, note("q1")), q.write(b.job, NoteAdded, note("q2"))
-	if got := deviceOrder([]Incoming{q2, p2, q1, raw("no entry"), p1}); fmt.Sprint(got) != "[2 0 4 1 3]" {
+	arrivals := make([]arrival, 5)
+	for i, in := range []Incoming{q2, p2, q1, raw("no entry"), p1} {
+		if err := arrivals[i].read(in); err != nil {
+			t.Fatal(err)
+		}
+	}
+	if got := deviceOrder(arrivals); fmt.Sprint(got) != "[2 0 4 1 3]" {
 		t.Errorf("taken in the order %v", got)
 	}
 	r := b.stored(b.tam, q2, p2, q1, p1)
@@ -558,6 +564,34 @@ func TestTheFirstSetApartKeepsItsNumber(t *testing.T) {
 	b.append(b.tam, first, p.write(newID(), NoteAdded, note("another unknown job")))
 	if d, err := b.Device(t.Context(), p.device); err != nil || d.ContiguousHash != first.Hash {
 		t.Errorf("device %+v (%v), want the hash of the first", d, err)
+	}
+	b.proved()
+}
+
+// What was set apart for a job that nobody knew goes into the log when it is sent again and the job is known.
+func TestWhatWasSetApartIsLookedAtAnew(t *testing.T) {
+	b := openBench(t)
+	p := newPhone(b.tam)
+	job := newID()
+	in := p.write(job, NoteAdded, note("written before the desk was restored"))
+	if a := b.append(b.tam, in).Answers[0]; a.Code != UnknownJob {
+		t.Fatalf("answer %+v", a)
+	}
+	settled := func() bool {
+		t.Helper()
+		list, err := b.Quarantine(t.Context(), 10)
+		if err != nil || len(list) != 1 {
+			t.Fatalf("%+v (%v)", list, err)
+		}
+		return list[0].Settled
+	}
+	if settled() {
+		t.Error("settled too early")
+	}
+	b.issue(job, "north")
+	b.stored(b.tam, in)
+	if !settled() {
+		t.Error("not settled")
 	}
 	b.proved()
 }

@@ -38,8 +38,8 @@ func (s *Store) AppendDesk(ctx context.Context, by Person, entries []DeskEntry) 
 			}
 			r.Answers = append(r.Answers, answer)
 		}
-		r.Epoch, r.Head, r.Jobs = w.epoch, w.head, w.jobs
-		return nil
+		r.Epoch, r.Head, r.Jobs = w.epoch, w.head, w.jobsGrown
+		return w.flush()
 	})
 	if err != nil {
 		return Receipt{}, err
@@ -81,19 +81,19 @@ func (w *writer) takeDesk(s *Store, device string, d DeskEntry) (Answer, error) 
 	if err != nil {
 		return Answer{}, err
 	}
-	e, err := ReadEntry(string(raw))
+	e, content, err := readEntry(string(raw))
 	if err != nil {
 		return Answer{}, err
 	}
 	hash := HashOf(string(raw))
-	refusal, err := w.objection(e, hash)
+	refusal, err := w.objection(e, content, hash)
 	if err != nil {
 		return Answer{}, err
 	}
 	if refusal != nil {
 		return Answer{}, refusal
 	}
-	seq, err = w.store(e, string(raw), hash)
+	seq, err = w.store(e, content, string(raw), hash)
 	return Answer{ID: d.ID, Status: Stored, Seq: seq}, err
 }
 

@@ -85,6 +85,12 @@ const (
 // ReadEntry reads the text of an entry. The error is a *Refusal; the Entry holds what could be read even then, so that
 // a quarantined text can be found by its job and device.
 func ReadEntry(raw string) (Entry, error) {
+	e, _, err := readEntry(raw)
+	return e, err
+}
+
+// readEntry returns the body as well, as ReadBody does.
+func readEntry(raw string) (Entry, any, error) {
 	var env envelope
 	// Names twice in one object, names in other case, and bytes that are not UTF-8 are errors here: two readers of the
 	// same text must not come to different entries.
@@ -107,44 +113,42 @@ func ReadEntry(raw string) (Entry, error) {
 	e.Job, e.Mount = job, mount
 	switch {
 	case err != nil:
-		return e, refuse(Malformed, "the entry is not JSON of the agreed form: %s", plain(err))
+		return e, nil, refuse(Malformed, "the entry is not JSON of the agreed form: %s", plain(err))
 	case env.ID == nil || env.Device == nil || env.DeviceSeq == nil || env.Prev == nil || env.Job == nil ||
 		env.Mount == nil || env.Kind == nil || env.Schema == nil || env.At == nil || env.MonoMs == nil ||
 		env.Author == nil || env.App == nil || env.Body == nil:
-		return e, refuse(Malformed, "the entry lacks one of its fields")
+		return e, nil, refuse(Malformed, "the entry lacks one of its fields")
 	case jobErr != nil || mountErr != nil:
-		return e, refuse(Malformed, "job and mount are text or null")
+		return e, nil, refuse(Malformed, "job and mount are text or null")
 	case !isUUID(e.ID, 7):
-		return e, refuse(Malformed, "id is not a UUID of version 7 in lower case")
+		return e, nil, refuse(Malformed, "id is not a UUID of version 7 in lower case")
 	case !isUUID(e.Device, 0):
-		return e, refuse(Malformed, "device is not a UUID in lower case")
+		return e, nil, refuse(Malformed, "device is not a UUID in lower case")
 	case e.DeviceSeq < 1:
-		return e, refuse(Malformed, "device_seq counts from 1")
+		return e, nil, refuse(Malformed, "device_seq counts from 1")
 	case e.DeviceSeq == 1 && e.Prev != "":
-		return e, refuse(Malformed, "the first entry of a device has no entry before it, so prev is empty")
+		return e, nil, refuse(Malformed, "the first entry of a device has no entry before it, so prev is empty")
 	case e.DeviceSeq > 1 && !isHash(e.Prev):
-		return e, refuse(Malformed, "prev is not a hash")
+		return e, nil, refuse(Malformed, "prev is not a hash")
 	case e.Job != "" && !isUUID(e.Job, 7):
-		return e, refuse(Malformed, "job is not a UUID of version 7 in lower case")
+		return e, nil, refuse(Malformed, "job is not a UUID of version 7 in lower case")
 	case len(e.Mount) > maxName:
-		return e, refuse(Malformed, "mount is too long")
+		return e, nil, refuse(Malformed, "mount is too long")
 	case math.IsNaN(e.MonoMs) || e.MonoMs < 0:
-		return e, refuse(Malformed, "mono_ms is not a time since something")
+		return e, nil, refuse(Malformed, "mono_ms is not a time since something")
 	case e.Author == "" || len(e.Author) > maxName:
-		return e, refuse(Malformed, "author is missing or too long")
+		return e, nil, refuse(Malformed, "author is missing or too long")
 	case len(e.App) > maxName:
-		return e, refuse(Malformed, "app is too long")
+		return e, nil, refuse(Malformed, "app is too long")
 	}
 	if _, err := time.Parse(time.RFC3339, e.At); err != nil {
-		return e, refuse(Malformed, "at is not an RFC 3339 time")
+		return e, nil, refuse(Malformed, "at is not an RFC 3339 time")
 	}
 	if e.Schema != 1 {
-		return e, refuse(UnknownKind, "schema %d of %q is not known here", e.Schema, e.Kind)
+		return e, nil, refuse(UnknownKind, "schema %d of %q is not known here", e.Schema, e.Kind)
 	}
-	if _, err := e.ReadBody(); err != nil {
-		return e, err
-	}
-	return e, nil
+	content, err := e.ReadBody()
+	return e, content, err
 }
 
 func text(p *string) string {

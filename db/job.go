@@ -243,13 +243,15 @@ type Apart struct {
 	AuthorName string
 	Uploader   string
 	Raw        string
+	// Settled: the same text is in the log by now; it was sent again after what stood against it was gone.
+	Settled bool
 }
 
 // Quarantine lists what was set apart, the latest first.
 func (s *Store) Quarantine(ctx context.Context, limit int) ([]Apart, error) {
 	rows, err := s.read.QueryContext(ctx, `
 		SELECT q.n, coalesce(q.id, ''), coalesce(q.job, ''), q.code, q.reason, q.received_ms, coalesce(a.name, ''),
-			coalesce(u.name, ''), q.raw
+			coalesce(u.name, ''), q.raw, EXISTS (SELECT 1 FROM entries e WHERE e.id = q.id AND e.hash = q.raw_hash)
 		FROM quarantine q LEFT JOIN people a ON a.id = q.author LEFT JOIN people u ON u.id = q.uploader
 		ORDER BY q.n DESC LIMIT ?`, limit)
 	if err != nil {
@@ -260,7 +262,7 @@ func (s *Store) Quarantine(ctx context.Context, limit int) ([]Apart, error) {
 	for rows.Next() {
 		var a Apart
 		var received int64
-		if err := rows.Scan(&a.N, &a.ID, &a.Job, &a.Code, &a.Reason, &received, &a.AuthorName, &a.Uploader, &a.Raw); err != nil {
+		if err := rows.Scan(&a.N, &a.ID, &a.Job, &a.Code, &a.Reason, &received, &a.AuthorName, &a.Uploader, &a.Raw, &a.Settled); err != nil {
 			return nil, err
 		}
 		a.ReceivedAt = timeOf(received)

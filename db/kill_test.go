@@ -70,9 +70,16 @@ func child(path string) error {
 						return err
 					}
 					for _, in := range batch {
-						if _, err := w.take(in); err != nil {
+						var a arrival
+						if err := a.read(in); err != nil {
 							return err
 						}
+						if _, err := w.take(a); err != nil {
+							return err
+						}
+					}
+					if err := w.flush(); err != nil {
+						return err
 					}
 					return syscall.Kill(os.Getpid(), syscall.SIGKILL)
 				})

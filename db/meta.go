@@ -96,7 +96,7 @@ type Device struct {
 func (s *Store) Devices(ctx context.Context, person string) ([]Device, error) {
 	rows, err := s.read.QueryContext(ctx, `
 		SELECT device, contiguous_seq, contiguous_hash, highest_seq FROM devices
-		WHERE device IN (SELECT device FROM receipts WHERE uploader = ?) ORDER BY device`, person)
+		WHERE device IN (SELECT device FROM device_people WHERE person = ?) ORDER BY device`, person)
 	if err != nil {
 		return nil, err
 	}

@@ -8,7 +8,7 @@ import (
 )
 
 // derived are the tables that follow from entries and quarantine, in an order in which they can be emptied.
-var derived = []string{"mounts", "jobs", "receipts", "devices"}
+var derived = []string{"mounts", "jobs", "devices", "device_people"}
 
 // Difference says that a derived table did not come out as it stood.
 type Difference struct {
@@ -92,18 +92,19 @@ func replay(ctx context.Context, tx *sql.Tx) error {
 		if err != nil {
 			return err
 		}
+		d := newDeriver(ctx, tx)
 		for _, l := range batch {
-			e, err := ReadEntry(l.raw)
+			e, content, err := readEntry(l.raw)
 			if err != nil {
 				return fmt.Errorf("entry %d: %w", l.seq, err)
 			}
-			if err := deriveFromEntry(ctx, tx, l.seq, e); err != nil {
-				return err
-			}
-			if err := deriveReceipt(ctx, tx, e.Device, e.DeviceSeq, l.hash, l.uploader, l.seq); err != nil {
+			if err := d.entered(l.seq, e, content, l.hash, l.uploader); err != nil {
 				return err
 			}
 			after = l.seq
+		}
+		if err := d.flush(); err != nil {
+			return err
 		}
 		if len(batch) < page {
 			break
@@ -125,12 +126,16 @@ func replay(ctx context.Context, tx *sql.Tx) error {
 		if err != nil {
 			return err
 		}
+		d := newDeriver(ctx, tx)
 		for _, a := range batch {
 			// The count by job was taken when the job's row was made.
-			if err := deriveFromQuarantine(ctx, tx, "", a.device.String, a.deviceSeq.Int64, a.rawHash, a.uploader); err != nil {
+			if err := d.setAside("", a.device.String, a.deviceSeq.Int64, a.rawHash, a.uploader); err != nil {
 				return err
 			}
 			after = a.n
+		}
+		if err := d.flush(); err != nil {
+			return err
 		}
 		if len(batch) < page {
 			return nil

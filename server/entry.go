@@ -274,11 +274,12 @@ func (s *Server) listQuarantine(c *fiber.Ctx) error {
 		AuthorName   *string `json:"author_name"`
 		UploaderName string  `json:"uploader_name"`
 		Raw          string  `json:"raw"`
+		Settled      bool    `json:"settled"`
 	}
 	out := make([]apartBody, 0, len(list))
 	for _, a := range list {
 		out = append(out, apartBody{ID: a.ID, Job: orNil(a.Job), Code: a.Code, Reason: a.Reason, ReceivedAt: stamp(a.ReceivedAt),
-			AuthorName: orNil(a.AuthorName), UploaderName: a.Uploader, Raw: a.Raw})
+			AuthorName: orNil(a.AuthorName), UploaderName: a.Uploader, Raw: a.Raw, Settled: a.Settled})
 	}
 	return answer(c, http.StatusOK, map[string]any{"entries": out})
 }

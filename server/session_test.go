@@ -182,6 +182,9 @@ func TestPassphraseForms(t *testing.T) {
 			t.Errorf("%q is taken", damaged)
 		}
 	}
+	if budget := hashesAtOnce * PassphraseCost.MemoryKiB; budget > 128<<10 {
+		t.Errorf("signing in may take %d KiB at once", budget)
+	}
 	if PassphraseCost.MemoryKiB < 64<<10 || PassphraseCost.Passes < 3 {
 		t.Errorf("a guess costs too little: %+v", PassphraseCost)
 	}

@@ -57,6 +57,7 @@ CREATE TABLE quarantine (
 ) STRICT;
 
 CREATE INDEX quarantine_by_job ON quarantine (job, n);
+CREATE INDEX quarantine_by_device ON quarantine (device, device_seq, n);
 
 CREATE TRIGGER quarantine_is_never_changed BEFORE UPDATE ON quarantine
 BEGIN SELECT RAISE(ABORT, 'quarantine is append-only'); END;
@@ -95,22 +96,18 @@ CREATE TABLE mounts (
   UNIQUE (job, id)
 ) STRICT, WITHOUT ROWID;
 
--- Every numbered entry of a device that arrived, in the log or set apart: what the device may count as received.
-CREATE TABLE receipts (
-  device      TEXT    NOT NULL,
-  device_seq  INTEGER NOT NULL,
-  hash        TEXT    NOT NULL,
-  uploader    TEXT    NOT NULL,
-  seq         INTEGER,
-  PRIMARY KEY (device, device_seq)
-) STRICT, WITHOUT ROWID;
-
-CREATE INDEX receipts_by_uploader ON receipts (uploader, device);
-
--- contiguous_seq: entries 1..contiguous_seq of the device are here without a gap; contiguous_hash is that of the last.
+-- contiguous_seq: numbers 1..contiguous_seq of the device are here without a gap, in the log or set apart;
+-- contiguous_hash is that of the last.
 CREATE TABLE devices (
   device          TEXT PRIMARY KEY,
   contiguous_seq  INTEGER NOT NULL,
   contiguous_hash TEXT    NOT NULL,
   highest_seq     INTEGER NOT NULL
+) STRICT, WITHOUT ROWID;
+
+-- From which devices a person ever uploaded.
+CREATE TABLE device_people (
+  person TEXT NOT NULL,
+  device TEXT NOT NULL,
+  PRIMARY KEY (person, device)
 ) STRICT, WITHOUT ROWID;

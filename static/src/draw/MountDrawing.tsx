@@ -146,8 +146,8 @@ function differs(antenna: DrawnAntenna, scale: number): boolean {
 
 // ---- Antennas ---------------------------------------------------------------------------------------------------
 
-function place(paper: Paper, at: DrawnPlace) {
-  return { transform: `translate(${paper.x(at.right_mm)}px, ${paper.y(at.up_mm)}px) rotate(${at.skew_deg}deg)` };
+function there(paper: Paper, at: DrawnPlace): string {
+  return `translate(${paper.x(at.right_mm)} ${paper.y(at.up_mm)})`;
 }
 
 function Outline({ antenna, scale }: { antenna: DrawnAntenna; scale: number }) {
@@ -219,9 +219,11 @@ function Drawn(props: { antenna: DrawnAntenna; paper: Paper; selected: boolean; 
   const below = (turnedHeight(antenna) * scale) / 2 + line * 0.6 + 4;
   return (
     <g class={classes}>
-      <g class="placed" style={place(paper, antenna.placed)}>
-        <Outline antenna={antenna} scale={scale} />
-        <Strokes antenna={antenna} scale={scale} half={half} />
+      <g transform={there(paper, antenna.placed)}>
+        <g class="turned" style={{ transform: `rotate(${antenna.placed.skew_deg}deg)` }}>
+          <Outline antenna={antenna} scale={scale} />
+          <Strokes antenna={antenna} scale={scale} half={half} />
+        </g>
       </g>
       <text class={`id over${inside ? ' on-sheet' : ''}`} x={inside ? lx : cx} y={ly} text-anchor="middle" dominant-baseline="central">
         {antenna.id}
@@ -248,7 +250,7 @@ function letterInside(antenna: DrawnAntenna, scale: number, letter: number): boo
 
 function Ghost({ antenna, paper }: { antenna: DrawnAntenna; paper: Paper }) {
   return (
-    <g class="ghost" style={place(paper, antenna.planned)}>
+    <g class="ghost" transform={`${there(paper, antenna.planned)} rotate(${antenna.planned.skew_deg})`}>
       <Outline antenna={antenna} scale={paper.scale} />
       {antenna.shape !== 'omni' && <Strokes antenna={antenna} scale={paper.scale} half={strokeHalf(antenna, paper.scale)} />}
     </g>

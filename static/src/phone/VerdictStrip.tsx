@@ -60,7 +60,7 @@ export function VerdictStrip({ verdict, sheet, problem, thinking, phase, href, b
             </span>
           )}
         </span>
-        {figures && verdict.word === 'measure again' && <strong class="figure">{t('strip.figure', figures)}</strong>}
+        {figures && verdict.word === 'measure again' && <strong class="figure begins">{t('strip.figure', figures)}</strong>}
         <span class="reason">
           {reason} <u>{t('strip.open')}</u>
         </span>

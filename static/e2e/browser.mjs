@@ -50,7 +50,7 @@ export function temporary(name) {
 export async function picture(page, name) {
   mkdirSync(pictures, { recursive: true });
   const fullPage = page.viewportSize().width >= 700;
-  await page.screenshot({ path: path.join(pictures, `${name}.png`), fullPage });
+  await page.screenshot({ path: path.join(pictures, `${name}.png`), fullPage, animations: 'disabled' });
 }
 
 /** Gathers what a page complains of. A test that does not expect any of it asks for the list to be empty. */

@@ -355,7 +355,10 @@ func (m *model) distance(x []float64, i, j int) float64 {
 }
 
 // Missing is a reading that a complete state needs and this one lacks.
-type Missing struct{ Antenna, Quantity string }
+type Missing struct {
+	Antenna, Quantity string
+	ByCompass         bool // read, but by compass alone
+}
 
 // missing lists the near readings that are not there.
 func (m *model) missing(b *belief) []Missing {
@@ -366,8 +369,9 @@ func (m *model) missing(b *belief) []Missing {
 			if q == right { // one axis is a reading; the others keep the doubt of the eye
 				have = have || b.measured[m.at(i, up)] || b.measured[m.at(i, forward)]
 			}
-			if !have {
-				out = append(out, Missing{m.bodies[i].antenna.ID, q.String()})
+			steel := q == azimuth && have && m.byCompassOnly(i, b.state)
+			if !have || steel {
+				out = append(out, Missing{m.bodies[i].antenna.ID, q.String(), steel})
 			}
 		}
 	}

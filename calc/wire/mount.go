@@ -58,7 +58,11 @@ func verdictAnswer(v *verdict.Verdict) answer {
 	}
 	missing := codec.Seq()
 	for _, m := range v.Missing {
-		missing.Items = append(missing.Items, codec.Obj(codec.M("antenna", codec.Str(m.Antenna)), codec.M("quantity", codec.Str(m.Quantity))))
+		why := "not read"
+		if m.ByCompass {
+			why = "compass only"
+		}
+		missing.Items = append(missing.Items, codec.Obj(codec.M("antenna", codec.Str(m.Antenna)), codec.M("quantity", codec.Str(m.Quantity)), codec.M("why", codec.Str(why))))
 	}
 	planned := codec.Seq()
 	for _, x := range v.Planned {

@@ -297,7 +297,7 @@ export interface Verdict {
   deciding: { antenna: string; quantity: Quantity; unit: 'deg' | 'mm'; u: number; u_needed: number | null } | null;
   limits: LimitOutcome[];
   remedies: Remedy[];
-  missing: { antenna: string; quantity: Quantity }[];
+  missing: { antenna: string; quantity: Quantity; why?: 'not read' | 'compass only' }[];
   states: {
     planned: { values: { name: LimitName; value: number | null }[] };
     as_found: StateOutcome | null;

@@ -31,13 +31,13 @@ export function FiguresTable({ predicted, caption }: { predicted: readonly Predi
               <th scope="row">
                 {p.port ? say('figures.of-port', { port: p.port, figure: figureName(p.figure) }) : figureName(p.figure)}
                 {unit && `, ${unit}`}
+                {off && <span class="off-mark">{say(p.measured < p.predicted ? 'figures.low' : 'figures.high')}</span>}
               </th>
               <td class="number">
                 {figure(p.predicted, decimals)} ± {figure(p.u, p.u < 2 ? 1 : 0)}
               </td>
               <td class="number" data-off={off}>
                 {figure(p.measured, decimals)}
-                {off && <span class="off-mark">{say(p.measured < p.predicted ? 'figures.low' : 'figures.high')}</span>}
               </td>
             </tr>
           );

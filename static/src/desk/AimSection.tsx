@@ -159,7 +159,7 @@ function useLandmark(sheet: Sheet, i: number): RoseMark | null {
   const landmark: Landmark | undefined = sheet.landmarks?.[i];
   const found = useReckoned<Target>(ask, 'aim.target', landmark ? bearingQuestion(sheet, landmark) : null);
   if (!landmark || !found.answer) return null;
-  return { kind: 'landmark', label: landmark.name, bearing_deg: found.answer.true_bearing_deg };
+  return { kind: 'landmark', label: landmark.name, short: String(i + 1), bearing_deg: found.answer.true_bearing_deg };
 }
 
 function SearchOf({ search, sheet, path, off, by }: { search: Search; sheet: Sheet; path: PathAnswer | null; off: EntryOf<'power_control.confirmed'> | null; by: (entry: Entry) => string }) {

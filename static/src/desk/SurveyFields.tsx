@@ -1,6 +1,7 @@
 // Where both ends stand, what stands between them, and known points to sight by. From the coordinates the server works
 // out bearing, elevation and distance, and the form takes them over on a press.
 
+import { Fragment } from 'preact';
 import { useState } from 'preact/hooks';
 import type { Target } from '../aim/answers.ts';
 import { targetQuestion } from '../aim/questions.ts';
@@ -131,12 +132,12 @@ export function SurveyFields({ id, sheet, edit, problemAt, onUnread }: Props) {
         {obstacles.map((o, i) => {
           const set = (change: (o: Obstacle) => void) => edit((s) => s.path.obstacles?.[i] && change(s.path.obstacles[i]));
           return (
-            <>
+            <Fragment key={i}>
               <TextField id={`${id}-o${i}-name`} label={say('obstacle.name')} text={o.name ?? ''} onText={(text) => set((x) => (x.name = text === '' ? null : text))} error={problemAt(`path.obstacles[${i}].name`)} />
               {number(`o${i}-at`, say('desk.survey.at'), 'm', o.at_m, (s, v) => putPart(s.path.obstacles?.[i], 'at_m', v), `path.obstacles[${i}].at_m`)}
               {number(`o${i}-top`, say('obstacle.top'), 'm', o.top_m, (s, v) => putPart(s.path.obstacles?.[i], 'top_m', v), `path.obstacles[${i}].top_m`)}
               <Button onPress={() => edit((s) => (s.path.obstacles = (s.path.obstacles ?? []).filter((_, k) => k !== i)))}>{say('desk.survey.remove', { name: o.name ?? String(i + 1) })}</Button>
-            </>
+            </Fragment>
           );
         })}
         <p class="buttons wide">
@@ -148,7 +149,7 @@ export function SurveyFields({ id, sheet, edit, problemAt, onUnread }: Props) {
         <legend>{say('desk.survey.landmarks')}</legend>
         <p class="hint wide">{say('desk.survey.landmarks-what')}</p>
         {landmarks.map((l, i) => (
-          <>
+          <Fragment key={i}>
             <TextField
               id={`${id}-l${i}-name`}
               label={say('landmark.name')}
@@ -160,7 +161,7 @@ export function SurveyFields({ id, sheet, edit, problemAt, onUnread }: Props) {
             <p class="buttons wide">
               <Button onPress={() => edit((s) => (s.landmarks = (s.landmarks ?? []).filter((_, k) => k !== i)))}>{say('desk.survey.remove', { name: l.name || String(i + 1) })}</Button>
             </p>
-          </>
+          </Fragment>
         ))}
         <p class="buttons wide">
           <Button onPress={() => edit((s) => (s.landmarks = [...(s.landmarks ?? []), { name: '' } as Landmark]))}>{say('desk.survey.add-landmark')}</Button>

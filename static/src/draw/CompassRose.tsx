@@ -7,10 +7,15 @@ export interface RoseMark {
   kind: 'target' | 'sun' | 'shadow' | 'landmark' | 'reading';
   /** Short: a word on the picture. */
   label: string;
+  /** What stands there instead where the word finds no room, as in the list under the picture. */
+  short?: string;
   bearing_deg: number;
   /** Standard uncertainty, drawn as a wedge of twice that to each side. */
   u_deg?: number | null;
 }
+
+/** What is drawn later lies on top: the target is never hidden. */
+const order: readonly RoseMark['kind'][] = ['shadow', 'landmark', 'sun', 'reading', 'target'];
 
 interface Box {
   left: number;
@@ -21,7 +26,8 @@ interface Box {
 
 export function CompassRose({ marks }: { marks: readonly RoseMark[] }) {
   const [ref, width] = useWidth<HTMLElement>(358);
-  const size = Math.min(width, 400);
+  // A column that is still unfolding may be narrower than any rose.
+  const size = Math.min(Math.max(width, 200), 400);
   const middle = width / 2;
   const r = size / 2 - 34;
   const cy = r + 30;
@@ -30,7 +36,8 @@ export function CompassRose({ marks }: { marks: readonly RoseMark[] }) {
     const a = (bearing * Math.PI) / 180;
     return [middle + radius * Math.sin(a), cy - radius * Math.cos(a)];
   };
-  const labels = placeLabels(marks, at, r);
+  const whole = placeLabels(marks, at, r);
+  const labels = whole.every((l) => l.fits) ? whole : placeLabels(marks.map((m) => ({ ...m, label: m.short ?? m.label })), at, r);
   const told = marks.map((m) => say('rose.mark', { name: m.label, bearing: String(Math.round(m.bearing_deg)) })).join(', ');
   return (
     <figure class="aim-drawing" ref={ref}>
@@ -50,7 +57,7 @@ export function CompassRose({ marks }: { marks: readonly RoseMark[] }) {
             </text>
           );
         })}
-        {marks.map((mark, i) => (
+        {[...marks].sort((a, b) => order.indexOf(a.kind) - order.indexOf(b.kind)).map((mark, i) => (
           <Mark key={i} mark={mark} at={at} r={r} />
         ))}
         <circle class="point" cx={middle} cy={cy} r="5" />
@@ -141,6 +148,6 @@ function placeLabels(marks: readonly RoseMark[], at: (bearing: number, radius: n
     const [x, y] = at(mark.bearing_deg, r - 40);
     const found = best ?? { x, y, box: { left: x - wide / 2, right: x + wide / 2, top: y - 12, bottom: y + 10 }, far: 0 };
     taken.push(found.box);
-    return { mark, x: found.x, y: found.y, led: found.far > 26, from: [mx, my] as const, box: found.box };
+    return { mark, fits: best !== null, x: found.x, y: found.y, led: found.far > 26, from: [mx, my] as const, box: found.box };
   });
 }

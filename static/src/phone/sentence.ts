@@ -65,6 +65,8 @@ function missingReason(verdict: Verdict): string {
   const named = verdict.reason.antenna && verdict.reason.quantity ? { antenna: verdict.reason.antenna, quantity: verdict.reason.quantity } : null;
   const first = named ?? verdict.missing[0];
   if (!first) return t('reason.missing-bare');
+  const steel = verdict.missing.some((m) => m.antenna === first.antenna && m.quantity === first.quantity && m.why === 'compass only');
+  if (steel) return t('reason.missing-compass', { antenna: first.antenna });
   const params = { antenna: first.antenna, quantity: t(`quantity.${first.quantity}`) };
   const more = verdict.missing.length - 1;
   return more > 0 ? t('reason.missing-more', { ...params, n: more }) : t('reason.missing', params);

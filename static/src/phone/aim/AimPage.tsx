@@ -70,7 +70,7 @@ function Aiming({ open, job: jobId, mount: mountId }: Address & { open: AimOpen 
           { kind: 'shadow' as const, label: say('rose.shadow'), bearing_deg: sun.answer.shadow_azimuth_deg ?? sun.answer.azimuth_deg + 180 },
         ]
       : []),
-    ...landmarks.map((l, i) => ({ kind: 'landmark' as const, label: landmarks.length > 2 || l.name.length > 12 ? String(i + 1) : l.name, bearing_deg: l.bearing_deg })),
+    ...landmarks.map((l, i) => ({ kind: 'landmark' as const, label: l.name, short: String(i + 1), bearing_deg: l.bearing_deg })),
   ];
   const place = { job: jobId, mount: mountId };
   const kept = searchesOf(entries, mountId).filter((s) => s.kept);
@@ -115,7 +115,7 @@ function Aiming({ open, job: jobId, mount: mountId }: Address & { open: AimOpen 
               ? { name: say('rose.sun-now'), value: say('rose.sun-at', { azimuth: `${figure(sun.answer.azimuth_deg, 1)}°`, up: `${figure(sun.answer.apparent_elevation_deg, 0)}°` }) }
               : null,
             ...landmarks.map((l, i) => ({
-              name: landmarks.length > 2 || l.name.length > 12 ? `${i + 1} ${l.name}` : l.name,
+              name: `${i + 1} ${l.name}`,
               value: `${bearing(l.bearing_deg, l.u_deg)}, ${besides(l.bearing_deg, aim)}`,
             })),
           ]}

@@ -67,7 +67,7 @@ const (
 // difference only.
 const (
 	fineTolerance   = 1e-5
-	coarseTolerance = 3e-3
+	coarseTolerance = 1e-2
 )
 
 // Engine evaluates geometries of one pair of mounts under one setup. It keeps scratch space: one goroutine at a time.

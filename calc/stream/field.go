@@ -246,9 +246,13 @@ func (m *mount) resolution(tolerance float64) scatter.Resolution {
 		}
 	}
 	for i := range m.bodies {
+		// A body skewed or leaning by up to 20° cuts a narrow elevation lobe aslant: along azimuth it is then 1/sin 20° = 3
+		// times as wide, and the other way round.
 		az, el := m.bodies[i].Pattern.Widths()
 		least(&r.BeamAz, az)
+		least(&r.BeamAz, 3*el)
 		least(&r.BeamEl, el)
+		least(&r.BeamEl, 3*az)
 	}
 	return r
 }

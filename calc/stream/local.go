@@ -19,15 +19,15 @@ const (
 type Local struct {
 	e             *Engine
 	anchor        Result
-	near, far     []antenna.Body
+	coarse        Result                   // the anchor by the same means
 	bits, streams [localReplicates]float64 // of the anchor by the same means
 }
 
 // Around makes a Local about the given geometry. The anchor's accurate answer is Anchor.
 func (e *Engine) Around(near, far []antenna.Body) *Local {
 	l := &Local{e: e, anchor: e.Evaluate(near, far)}
-	l.near, l.far = append(l.near, near...), append(l.far, far...)
 	e.load(near, far, true)
+	l.coarse = e.describe(near, far, false)
 	l.bits, l.streams = e.few()
 	return l
 }
@@ -66,8 +66,34 @@ func (l *Local) Evaluate(near, far []antenna.Body) Result {
 	e.load(near, far, true)
 	r := e.describe(near, far, false)
 	r.BitsPerSHz, r.StandardError, r.EffectiveStreams, r.StreamsError = l.difference()
+	l.level(&r)
 	e.finish(&r)
 	return r
+}
+
+// level takes out of r what the coarse quadrature does to the anchor: differences of rates and envelopes, ratios of
+// powers.
+func (l *Local) level(r *Result) {
+	a, c := &l.anchor, &l.coarse
+	if c.MeanPower == nil { // no anchor
+		return
+	}
+	r.SingleChain = math.Max(r.SingleChain+a.SingleChain-c.SingleChain, 0)
+	envelope := func(r *float64, a, c float64) {
+		if *r >= 0 && a >= 0 && c >= 0 {
+			*r = math.Min(math.Max(*r+a-c, 0), 1)
+		}
+	}
+	envelope(&r.NearEnvelope, a.NearEnvelope, c.NearEnvelope)
+	envelope(&r.FarEnvelope, a.FarEnvelope, c.FarEnvelope)
+	for f := range r.MeanPower {
+		for n := range r.MeanPower[f] {
+			// A port that receives next to nothing at the anchor keeps its own figure: a ratio there says nothing.
+			if x, y := a.MeanPower[f][n], c.MeanPower[f][n]; x > 1e-6 && y > 1e-6 {
+				r.MeanPower[f][n] *= x / y
+			}
+		}
+	}
 }
 
 func (l *Local) difference() (bits, bitsError, streams, streamsError float64) {

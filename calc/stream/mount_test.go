@@ -368,6 +368,77 @@ func TestEngineAgainstRays(t *testing.T) {
 	}
 }
 
+// TestCovarianceAgainstDraws: R_V and R_H of ports on bodies that are askew each in its own way, against plain draws of
+// directions.
+func TestCovarianceAgainstDraws(t *testing.T) {
+	a, b := panel(0, 0), panel(0.06, 0.02)
+	a.Azimuth, a.Tilt, a.Skew = 25*degree, -6*degree, 35*degree
+	b.Azimuth, b.Tilt, b.Skew = -15*degree, 9*degree, -50*degree
+	b.Ports = []antenna.Port{{Slant: 20 * degree, Axial: 0.6, Hand: antenna.Left}, {Slant: -70 * degree, Leak: 0.2}}
+	near := []antenna.Body{a, b}
+	around := scatter.Surroundings{XPR: 2, Near: scatter.Angular{AzimuthSpread: 35 * degree, ElevationSpread: 8 * degree, AzimuthMean: 10 * degree}, Far: scatter.Angular{AzimuthSpread: 5 * degree, ElevationSpread: 2 * degree}}
+	s := link(around, 20)
+	e, err := New(s, near, []antenna.Body{omni(0, 0, 0)})
+	if err != nil {
+		t.Fatal(err)
+	}
+	d := e.Detail(near, []antenna.Body{omni(0, 0, 0)})
+	m := &rays{s: s, random: rand.New(rand.NewPCG(7, 8))}
+	const draws = 200000
+	var v, h, vv, hh [16]complex128
+	for range draws {
+		dir := m.direction(&around.Near)
+		fv, fh := fieldsAt(near, &dir, 2*math.Pi/lambda)
+		for i := range 4 {
+			for j := range 4 {
+				x, y := fv[i]*conj(fv[j]), fh[i]*conj(fh[j])
+				v[i*4+j] += x / draws
+				h[i*4+j] += y / draws
+				vv[i*4+j] += complex(abs2(x)/draws, 0)
+				hh[i*4+j] += complex(abs2(y)/draws, 0)
+			}
+		}
+	}
+	for i := range v {
+		if off, se := cmplx.Abs(v[i]-d.NearV[i]), math.Sqrt(real(vv[i])/draws); off > 4*se+2e-5 {
+			t.Errorf("V %d %d: drawn %v ± %v, integrated %v", i/4, i%4, v[i], se, d.NearV[i])
+		}
+		if off, se := cmplx.Abs(h[i]-d.NearH[i]), math.Sqrt(real(hh[i])/draws); off > 4*se+2e-5 {
+			t.Errorf("H %d %d: drawn %v ± %v, integrated %v", i/4, i%4, h[i], se, d.NearH[i])
+		}
+	}
+}
+
+func TestStandardErrorHoldsThePlans(t *testing.T) {
+	near, far := row(2, 0.5)
+	e, err := New(link(class(scatter.UrbanMicro, false), 25), near, far)
+	if err != nil {
+		t.Fatal(err)
+	}
+	p, r := e.Planned(), e.Evaluate(near, far)
+	if math.Abs(p.BitsPerSHz-r.BitsPerSHz) > 1e-9 || r.StandardError < 0.999*p.StandardError || p.StandardError > 0.01 || p.StandardError == 0 {
+		t.Errorf("the plan, compared with itself: %v ± %v, first %v ± %v", r.BitsPerSHz, r.StandardError, p.BitsPerSHz, p.StandardError)
+	}
+}
+
+func TestSharedPower(t *testing.T) {
+	// Shared over N near ports is per chain at ρ/N, and its single pair has all of it.
+	one, two := []antenna.Body{omni(0, 0, 0)}, []antenna.Body{omni(0, 0, 0), omni(0.1, 0, 0)}
+	for _, c := range []struct{ near, far []antenna.Body }{{one, two}, {two, one}} {
+		s := link(class(scatter.UrbanMicro, false), 17)
+		s.Power = Shared
+		a := planned(t, s, c.near, c.far)
+		s.Power, s.SNR = PerChain, s.SNR/float64(len(c.near))
+		b := planned(t, s, c.near, c.far)
+		if math.Abs(a.BitsPerSHz-b.BitsPerSHz) > 1e-9 {
+			t.Errorf("%d near ports: %v and %v", len(c.near), a.BitsPerSHz, b.BitsPerSHz)
+		}
+		if len(c.near) == 2 && a.SingleChain < b.SingleChain+0.5 {
+			t.Errorf("single pair %v with all, %v with half of the power", a.SingleChain, b.SingleChain)
+		}
+	}
+}
+
 // mounts draws a random link.
 func mounts(t *rapid.T) (s Setup, near, far []antenna.Body) {
 	angle := func(name string, most float64) float64 { return rapid.Float64Range(-most, most).Draw(t, name) * degree }
@@ -680,7 +751,9 @@ func TestLocalAgainstEvaluate(t *testing.T) {
 			near[0].Skew, near[0].Tilt = 5*degree, 2*degree
 			l := e.Around(near, far)
 			anchor := l.Anchor()
-			if got := l.Evaluate(near, far); math.Abs(got.BitsPerSHz-anchor.BitsPerSHz) > 1e-9 || math.Abs(got.EffectiveStreams-anchor.EffectiveStreams) > 1e-9 {
+			if got := l.Evaluate(near, far); math.Abs(got.NearEnvelope-anchor.NearEnvelope) > 1e-12 || math.Abs(got.FarEnvelope-anchor.FarEnvelope) > 1e-12 || math.Abs(got.MeanPower[0][0]/anchor.MeanPower[0][0]-1) > 1e-12 || math.Abs(got.RateMultiple/anchor.RateMultiple-1) > 1e-9 {
+				t.Errorf("%s %d: the anchor itself is %+v, want %+v", name, n, got, anchor)
+			} else if math.Abs(got.BitsPerSHz-anchor.BitsPerSHz) > 1e-9 || math.Abs(got.EffectiveStreams-anchor.EffectiveStreams) > 1e-9 {
 				t.Errorf("%s %d: the anchor itself is %v, want %v", name, n, got.BitsPerSHz, anchor.BitsPerSHz)
 			}
 			var change, left, streams float64
@@ -788,6 +861,19 @@ func TestStreamsAndBeams(t *testing.T) {
 				}
 			}
 		})
+	})
+	t.Run("both polarizations of a beam add in power", func(t *testing.T) {
+		slanted := []antenna.Body{omni(0, 0, 0)}
+		slanted[0].Ports = []antenna.Port{{Slant: 45 * degree}}
+		facing := []antenna.Body{omni(0, 0, 0)}
+		facing[0].Ports = []antenna.Port{{Slant: -45 * degree}}
+		e, err := New(sightOnly(20), slanted, facing)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if s, err := e.Streams(slanted, facing, true, []float64{0, 1}); err != nil || math.Abs(s[0].Beam[0])+math.Abs(s[0].Beam[1]) > 1e-6 {
+			t.Errorf("%+v %v", s, err)
+		}
 	})
 	e, err := New(sightOnly(20), []antenna.Body{omni(0, 0, 0)}, []antenna.Body{omni(0, 0, 0)})
 	if err != nil {

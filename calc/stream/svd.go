@@ -15,9 +15,17 @@ func svd(a []complex128, rows, cols int) (u []complex128, s []float64, v []compl
 	for j := range cols {
 		v[j*cols+j] = 1
 	}
-	total := 0.0
+	// Scaled to 1, squares neither overflow nor vanish.
+	size := 0.0
 	for _, x := range w {
-		total += abs2(x)
+		size = math.Max(size, math.Max(math.Abs(real(x)), math.Abs(imag(x))))
+	}
+	total := 0.0
+	for i, x := range w {
+		if size > 0 {
+			w[i] = complex(real(x)/size, imag(x)/size)
+		}
+		total += abs2(w[i])
 	}
 	for range 60 {
 		rotated := false
@@ -114,6 +122,9 @@ func svd(a []complex128, rows, cols int) (u []complex128, s []float64, v []compl
 				col[i] /= complex(math.Sqrt(length), 0)
 			}
 		}
+	}
+	for j := range s {
+		s[j] *= size
 	}
 	return u, s, v
 }

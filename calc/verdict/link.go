@@ -175,14 +175,14 @@ func (m *model) setup(measuredAt []float64) (stream.Setup, *codec.Problem) {
 	}
 	near, far := m.hang(m.plan)
 	atNear, atFar := m.hang(measuredAt)
-	r, err := stream.Glance(s, []scatter.Surroundings{s.Around}, near, far, [][2][]antenna.Body{{atNear, atFar}})
+	mean, err := stream.MeanPowers(s, near, far, atNear, atFar)
 	if err != nil {
 		return s, &codec.Problem{Code: codec.NotModelled, Message: err.Error()}
 	}
 	power, n := 0.0, 0.0
 	for i, j := range m.link {
 		if j >= 0 {
-			power += r[0][0].MeanPower[j][i]
+			power += mean[j][i]
 			n++
 		}
 	}

@@ -44,7 +44,6 @@ type flow struct {
 	engine  *stream.Engine
 	planned stream.Result
 	local   *stream.Local // about the geometry last anchored
-	coarse  []float64     // what the quick response is off by at the anchor
 	near    []antenna.Body
 	far     []antenna.Body
 	wanted  [metrics]bool
@@ -181,13 +180,7 @@ func (f *flow) exact(x []float64) []float64 {
 	f.place(x)
 	f.local = f.engine.Around(f.near, f.far)
 	r := f.local.Anchor()
-	out := f.of(&r, f.planned.BitsPerSHz)
-	f.coarse = nil
-	f.coarse = f.nearby(x)
-	for k := range out {
-		f.coarse[k] -= out[k]
-	}
-	return out
+	return f.of(&r, f.planned.BitsPerSHz)
 }
 
 // accurate is the accurate response at x; the anchor stays where it is. For
@@ -202,11 +195,7 @@ func (f *flow) accurate(x []float64) []float64 {
 func (f *flow) nearby(x []float64) []float64 {
 	f.place(x)
 	r := f.local.Evaluate(f.near, f.far)
-	out := f.of(&r, f.planned.BitsPerSHz)
-	for k := range f.coarse {
-		out[k] -= f.coarse[k]
-	}
-	return out
+	return f.of(&r, f.planned.BitsPerSHz)
 }
 
 // whyNot tells why a metric does not apply to this mount; empty where it does.

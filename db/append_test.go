@@ -565,6 +565,26 @@ func TestTheFirstSetApartKeepsItsNumber(t *testing.T) {
 	if d, err := b.Device(t.Context(), p.device); err != nil || d.ContiguousHash != first.Hash {
 		t.Errorf("device %+v (%v), want the hash of the first", d, err)
 	}
+	// The same where the number is reached later, when the one before it comes.
+	q := newPhone(b.tam)
+	one := q.write(b.job, NoteAdded, note("one"))
+	two := q.write(newID(), NoteAdded, note("unknown job"))
+	q.seq, q.prev = 1, one.Hash
+	b.append(b.tam, two)
+	b.append(b.tam, q.write(newID(), NoteAdded, note("another unknown job")))
+	b.stored(b.tam, one)
+	if d, err := b.Device(t.Context(), q.device); err != nil || d.ContiguousSeq != 2 || d.ContiguousHash != two.Hash {
+		t.Errorf("device %+v (%v), want 2 with the hash of the first", d, err)
+	}
+	// What is in the log stands before what was set apart.
+	r := newPhone(b.tam)
+	one, two = r.write(b.job, NoteAdded, note("one")), r.write(b.job, NoteAdded, note("two"))
+	b.append(b.tam, Incoming{Raw: strings.Replace(two.Raw, "two", "tw0", 1), Hash: two.Hash})
+	b.stored(b.tam, two)
+	b.stored(b.tam, one)
+	if d, err := b.Device(t.Context(), r.device); err != nil || d.ContiguousSeq != 2 || d.ContiguousHash != two.Hash {
+		t.Errorf("device %+v (%v), want 2 with the hash of what is in the log", d, err)
+	}
 	b.proved()
 }
 
@@ -592,6 +612,20 @@ func TestWhatWasSetApartIsLookedAtAnew(t *testing.T) {
 	b.stored(b.tam, in)
 	if !settled() {
 		t.Error("not settled")
+	}
+	b.proved()
+}
+
+// Within one batch, too, an entry has to follow the one before it.
+func TestTheChainIsCheckedWithinABatch(t *testing.T) {
+	b := openBench(t)
+	p := newPhone(b.tam)
+	one := p.write(b.job, NoteAdded, note("one"))
+	p.prev = strings.Repeat("a", 64)
+	two := p.write(b.job, NoteAdded, note("follows another one"))
+	r := b.append(b.tam, one, two)
+	if r.Answers[0].Status != Stored || r.Answers[1].Code != ChainBroken {
+		t.Errorf("answers %+v", r.Answers)
 	}
 	b.proved()
 }

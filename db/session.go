@@ -69,7 +69,8 @@ func (s *Store) Session(ctx context.Context, token string) (Person, time.Time, e
 		if err := s.inTx(ctx, func(tx *sql.Tx) error {
 			_, err := tx.ExecContext(ctx, "UPDATE sessions SET seen_ms = ? WHERE token_hash = ?", now.UnixMilli(), tokenHash(token))
 			return err
-		}); err != nil {
+		}); err != nil && !IsFull(err) && !IsBusy(err) {
+			// On a full disk people can still read, and a session that was not written down as seen is still theirs.
 			return Person{}, time.Time{}, err
 		}
 	}
@@ -103,6 +104,10 @@ const (
 	longestTry = 5 * time.Minute
 )
 
+// forgetAfter an hour without an attempt the count begins anew: that gives a guesser about eleven tries in 69 minutes,
+// no more than waiting does, and bounds what strangers can fill the table with.
+const forgetAfter = time.Hour
+
 func waitAfter(failed int) time.Duration {
 	if failed < freeTries {
 		return 0
@@ -132,8 +137,7 @@ func (s *Store) Try(ctx context.Context, name string) (wait time.Duration, err e
 			wait = early
 			return nil
 		}
-		// A day without an attempt forgets; it also bounds the table.
-		if _, err := tx.ExecContext(ctx, "DELETE FROM sign_in_attempts WHERE last_ms < ?", now.Add(-24*time.Hour).UnixMilli()); err != nil {
+		if _, err := tx.ExecContext(ctx, "DELETE FROM sign_in_attempts WHERE last_ms < ?", now.Add(-forgetAfter).UnixMilli()); err != nil {
 			return err
 		}
 		_, err = tx.ExecContext(ctx, `
@@ -153,7 +157,7 @@ func (s *Store) Succeeded(ctx context.Context, name string) error {
 	})
 }
 
-// Failed writes a failed sign-in into the audit.
-func (s *Store) Failed(ctx context.Context, name string) error {
-	return s.inTx(ctx, func(tx *sql.Tx) error { return s.audit(ctx, tx, "", "sign-in failed", clip(nameKey(name))) })
+// Failed writes into the audit that somebody tried to sign in as this person.
+func (s *Store) Failed(ctx context.Context, person string) error {
+	return s.inTx(ctx, func(tx *sql.Tx) error { return s.audit(ctx, tx, person, "sign-in failed", "") })
 }

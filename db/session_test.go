@@ -243,3 +243,25 @@ func TestWrongPassphrasesWait(t *testing.T) {
 		t.Errorf("after a success: %v", wait)
 	}
 }
+
+// On a full disk people can still look things up.
+func TestASessionOutlivesAFullDisk(t *testing.T) {
+	b := openBench(t)
+	token, _, err := b.Begin(t.Context(), b.tam)
+	if err != nil {
+		t.Fatal(err)
+	}
+	b.clock.pass(seenEvery)
+	if _, err := b.write.Exec("CREATE TEMP TRIGGER full BEFORE UPDATE ON main.sessions BEGIN SELECT RAISE(ABORT, 'x'); END"); err != nil {
+		t.Fatal(err)
+	}
+	if _, _, err := b.Session(t.Context(), token); err == nil {
+		t.Fatal("an error that is none of the disk's was passed over")
+	}
+	if _, err := b.write.Exec("DROP TRIGGER full; PRAGMA query_only = on"); err != nil {
+		t.Fatal(err)
+	}
+	if p, _, err := b.Session(t.Context(), token); err != nil || p != b.tam {
+		t.Errorf("%+v (%v)", p, err)
+	}
+}

@@ -6,7 +6,9 @@ import (
 	"github.com/gofiber/fiber/v2"
 )
 
-// GET /healthz tells that the process answers and the log can be written. It is open to everybody and says nothing else.
+// GET /healthz tells that the process answers and that a writing transaction can be begun. It does not write, so that a
+// stranger cannot make it sync the disk; a full disk shows as 507 on uploads. It is open to everybody and says nothing
+// else.
 func (s *Server) health(c *fiber.Ctx) error {
 	if err := knownQuery(c); err != nil {
 		return err
@@ -14,7 +16,7 @@ func (s *Server) health(c *fiber.Ctx) error {
 	ctx, done := s.patience()
 	defer done()
 	if err := s.cfg.Store.Ping(ctx); err != nil {
-		return &problem{Status: http.StatusServiceUnavailable, Code: "unhealthy", Detail: "the log cannot be written; the server's own log says why", Cause: err}
+		return &problem{Status: http.StatusServiceUnavailable, Code: "unhealthy", Detail: "no transaction can be begun on the database; the server's own log says why", Cause: err}
 	}
 	c.Set(fiber.HeaderCacheControl, "no-store")
 	return answer(c, http.StatusOK, map[string]any{"status": "ok", "demo": s.cfg.Demo})

@@ -16,6 +16,7 @@ import (
 	"errors"
 	"log/slog"
 	"net"
+	"sync"
 	"time"
 
 	"github.com/gofiber/fiber/v2"
@@ -58,6 +59,7 @@ type Server struct {
 	dummy   string
 	openAPI []byte
 	judge   judge
+	beside  sync.WaitGroup // what runs beside the requests and is short
 }
 
 // The limits of one request. Entries come in batches of 256 KiB at most, a plan with its sheets likewise; a calculation
@@ -136,6 +138,7 @@ const shutdownPatience = 6 * time.Second
 // Shutdown stops listening, lets requests in flight end, then stops what runs beside them. Close the store afterwards.
 func (s *Server) Shutdown() error {
 	err := s.app.ShutdownWithTimeout(shutdownPatience)
+	s.beside.Wait()
 	s.stop()
 	s.judge.wait()
 	if errors.Is(err, context.DeadlineExceeded) {

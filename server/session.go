@@ -2,6 +2,7 @@ package server
 
 import (
 	"errors"
+	"log/slog"
 	"net/http"
 	"time"
 
@@ -161,9 +162,7 @@ func (s *Server) recognise(name, passphrase string) (db.Person, error) {
 		return db.Person{}, err
 	}
 	if !same || !known {
-		if err := s.cfg.Store.Failed(ctx, name); err != nil {
-			return db.Person{}, err
-		}
+		s.noteFailure(p, known)
 		return db.Person{}, refused(http.StatusUnauthorized, "wrong_passphrase", "name and passphrase do not belong together")
 	}
 	if renewed != "" {
@@ -172,6 +171,22 @@ func (s *Server) recognise(name, passphrase string) (db.Person, error) {
 		}
 	}
 	return p, s.cfg.Store.Succeeded(ctx, name)
+}
+
+// noteFailure writes a failed sign-in down, beside the request: the time that it takes would tell a stranger whether the
+// name is there. A name that nobody has goes to the log only, since strangers could fill the audit with such.
+func (s *Server) noteFailure(p db.Person, known bool) {
+	s.beside.Go(func() {
+		if !known {
+			s.cfg.Log.Info("sign-in failed", slog.String("name", "nobody's"))
+			return
+		}
+		ctx, done := s.patience()
+		defer done()
+		if err := s.cfg.Store.Failed(ctx, p.ID); err != nil {
+			s.cfg.Log.Warn("failed sign-in not written down", slog.String("error", err.Error()))
+		}
+	})
 }
 
 func (s *Server) accept(invitation, name, passphrase string) (db.Person, error) {

@@ -219,6 +219,8 @@ func TestSignInsAreAudited(t *testing.T) {
 	before := s.contents()["audit"]
 	s.do(call{method: "POST", path: "/api/session", body: signInBody("Ilse", passphrase), status: 200})
 	s.do(call{method: "POST", path: "/api/session", body: signInBody("Ilse", "wrong"), status: 401})
+	s.do(call{method: "POST", path: "/api/session", body: signInBody("Nobody", "wrong"), status: 401}) // strangers do not fill the audit
+	s.server.beside.Wait()
 	if after := s.contents()["audit"]; after != before+2 {
 		t.Errorf("%d lines of audit, want 2 more than %d", after, before)
 	}

@@ -35,7 +35,7 @@ func mountFold(v *codec.Value) (answer, *Problem) {
 
 func mountVerdict(v *codec.Value) (answer, *Problem) {
 	s, p := sheet.Read(v)
-	if p != nil {
+	if p != nil || v.Described() {
 		return nil, p
 	}
 	judged, p := verdict.Judge(s)

@@ -14,7 +14,7 @@ func toleranceOperations() []operation {
 
 func mountTolerances(v *codec.Value) (answer, *Problem) {
 	s, p := sheet.Read(v)
-	if p != nil {
+	if p != nil || v.Described() {
 		return nil, p
 	}
 	t, p := verdict.Tolerate(s)

@@ -3,6 +3,7 @@ package main
 import (
 	"encoding/json"
 	"fmt"
+	"os"
 	"path"
 	"path/filepath"
 	"sort"
@@ -32,7 +33,7 @@ func bundle(static string, chain toolchain, gen *folder, wasmURL string) (*scrip
 		AbsWorkingDir:       static,
 		EntryPointsAdvanced: []api.EntryPoint{{InputPath: "src/calc/worker.ts", OutputPath: "worker"}},
 		Format:              api.FormatIIFE,
-		Alias:               map[string]string{"go/wasm_exec": chain.glue()},
+		Plugins:             []api.Plugin{gluePlugin(chain)},
 		Define:              map[string]string{"CALC_WASM": quoted(wasmURL)},
 	})
 	if err != nil {
@@ -75,6 +76,25 @@ func bundle(static string, chain toolchain, gen *folder, wasmURL string) (*scrip
 		s.files[page] = append(reached, workerName, strings.TrimPrefix(wasmURL, "/gen/"))
 	}
 	return s, nil
+}
+
+// gluePlugin answers the import of "go/wasm_exec" with the glue of the toolchain. By a name of its own rather than by its
+// path: a path relative to the project would get into the hashes, and another folder would build other names.
+func gluePlugin(chain toolchain) api.Plugin {
+	const namespace = "go"
+	return api.Plugin{Name: "glue between Go and JavaScript", Setup: func(build api.PluginBuild) {
+		build.OnResolve(api.OnResolveOptions{Filter: `^go/wasm_exec$`}, func(api.OnResolveArgs) (api.OnResolveResult, error) {
+			return api.OnResolveResult{Path: "wasm_exec.js", Namespace: namespace}, nil
+		})
+		build.OnLoad(api.OnLoadOptions{Filter: `.*`, Namespace: namespace}, func(api.OnLoadArgs) (api.OnLoadResult, error) {
+			text, err := os.ReadFile(chain.glue())
+			if err != nil {
+				return api.OnLoadResult{}, err
+			}
+			contents := string(text)
+			return api.OnLoadResult{Contents: &contents, Loader: api.LoaderJS}, nil
+		})
+	}}
 }
 
 // output is one file of a build and what it leads to.

@@ -182,3 +182,55 @@ func TestPhonecalcHoldsNeitherServerNorDatabase(t *testing.T) {
 		t.Errorf("cmd/phonecalc has %d lines, 50 are allowed: what grows belongs behind calc/wire", n)
 	}
 }
+
+// A build in another folder gives the same names and bytes: paths of the machine must not get into the hashes, or every
+// build would make every phone fetch everything anew.
+func TestTheFolderOfTheProjectDoesNotShow(t *testing.T) {
+	here, err := filepath.Abs(filepath.Join("..", "..", "static"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	if _, err := os.Stat(filepath.Join(here, "node_modules", "preact")); err != nil {
+		t.Skip("the libraries are not there: npm ci --prefix static")
+	}
+	there := filepath.Join(t.TempDir(), "some", "where", "else", "static")
+	for _, part := range []string{"src", "style", "package.json", "tsconfig.json", "node_modules/preact", "node_modules/idb",
+		"node_modules/uuidv7", "node_modules/@fontsource"} {
+		target := filepath.Join(there, part)
+		if err := os.MkdirAll(filepath.Dir(target), 0o755); err != nil {
+			t.Fatal(err)
+		}
+		if info, err := os.Stat(filepath.Join(here, part)); err != nil {
+			t.Fatal(err)
+		} else if info.IsDir() {
+			err = os.CopyFS(target, os.DirFS(filepath.Join(here, part)))
+			if err != nil {
+				t.Fatal(err)
+			}
+		} else if text, err := os.ReadFile(filepath.Join(here, part)); err != nil {
+			t.Fatal(err)
+		} else if err := os.WriteFile(target, text, 0o644); err != nil {
+			t.Fatal(err)
+		}
+	}
+	chain, err := findToolchain()
+	if err != nil {
+		t.Fatal(err)
+	}
+	var built [2]*folder
+	for i, static := range []string{here, there} {
+		built[i] = testFolder(t)
+		if _, err := bundle(static, chain, built[i], "/gen/calc-AAAAAAAA.wasm"); err != nil {
+			t.Fatal(err)
+		}
+	}
+	one, two := built[0].sorted(), built[1].sorted()
+	if len(one) != len(two) || len(one) < 6 {
+		t.Fatalf("%d and %d files", len(one), len(two))
+	}
+	for i := range one {
+		if one[i].name != two[i].name || !bytes.Equal(one[i].content, two[i].content) {
+			t.Errorf("%s here, %s there", one[i].name, two[i].name)
+		}
+	}
+}

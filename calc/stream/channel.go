@@ -15,6 +15,8 @@ type channel struct {
 	power     []float64    // E|h − h̄|² of the ports
 	mean      []complex128 // vec(H̄) of the twins
 	lower     []complex128 // L packed by rows: row i has i+1 entries
+	runs      []run        // what of L is not zero, row after row
+	ends      []int        // runs of row i are those before ends[i]
 	paths     [][]complex128
 	random    bool
 
@@ -43,6 +45,50 @@ func newChannel(far, near, paths int) *channel {
 	}
 	c.lower = make([]complex128, n*(n+1)/2)
 	return c
+}
+
+// run is a stretch of a row of L.
+type run struct{ from, to, at int } // columns, and where the first one is in lower
+
+// sparse lists the runs of L. Entries below 1e-12 of the largest count as zero: polarizations that scatter apart leave
+// three quarters of L empty.
+func (c *channel) sparse() {
+	c.runs, c.ends = c.runs[:0], c.ends[:0]
+	most := 0.0
+	for _, l := range c.lower {
+		most = math.Max(most, abs2(l))
+	}
+	least := 1e-24 * most
+	at := 0
+	for i := range c.far * c.near {
+		open := false
+		for j := range i + 1 {
+			if abs2(c.lower[at+j]) > least {
+				if !open {
+					c.runs = append(c.runs, run{j, j, at + j})
+					open = true
+				}
+				c.runs[len(c.runs)-1].to = j + 1
+			} else {
+				open = false
+			}
+		}
+		c.ends = append(c.ends, len(c.runs))
+		at += i + 1
+	}
+}
+
+// row is Σ_j L_ij w_j.
+func (c *channel) row(i int, w []complex128) complex128 {
+	from := 0
+	if i > 0 {
+		from = c.ends[i-1]
+	}
+	var s complex128
+	for _, r := range c.runs[from:c.ends[i]] {
+		s += product(c.lower[r.at:r.at+r.to-r.from], w[r.from:r.to])
+	}
+	return s
 }
 
 // powers fills power and random from the ends' covariances, scale being 1/(1+K).
@@ -112,6 +158,7 @@ func (c *channel) factor(scale, same, cross float64) {
 			ri[i] = 0
 		}
 	}
+	c.sparse()
 }
 
 // sum fills power from the paths.
@@ -141,10 +188,8 @@ func (c *channel) at(w []complex128) {
 		}
 		return
 	}
-	at := 0
 	for i := range h {
-		h[i] += product(c.lower[at:at+i+1], w)
-		at += i + 1
+		h[i] += c.row(i, w)
 	}
 }
 

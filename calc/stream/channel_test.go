@@ -197,6 +197,7 @@ func TestPoints(t *testing.T) {
 			ref.lower[i*(i+1)/2+i] = complex(0.5+0.1*float64(i), 0)
 			ref.mean[i] = complex(0.3*float64(i%4), -0.2)
 		}
+		ref.sparse()
 		law(t, newPoints(3, 3, false, ref))
 	})
 	t.Run("phases are uniform", func(t *testing.T) {

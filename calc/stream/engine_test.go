@@ -94,3 +94,24 @@ func BenchmarkStream8(b *testing.B) {
 	b.Run("RMa", func(b *testing.B) { benchmarkEngine(b, 4, class(scatter.RuralMacro, true)) })
 	b.Run("UMi", func(b *testing.B) { benchmarkEngine(b, 4, class(scatter.UrbanMicro, false)) })
 }
+
+// BenchmarkCovariance is R_V and R_H of two crossed panels at the wide end of UMi, all bodies moved, at both accuracies.
+func BenchmarkCovariance(b *testing.B) {
+	around := class(scatter.UrbanMicro, false)
+	near, _ := row(2, 0.5)
+	m := newMount(near, lambda)
+	for name, tolerance := range map[string]float64{"fine": fineTolerance, "coarse": coarseTolerance} {
+		b.Run(name, func(b *testing.B) {
+			s := newSpectrum(m, &around.Far, tolerance)
+			v, h := make([]complex128, 16), make([]complex128, 16)
+			turn := 0.0
+			for b.Loop() {
+				turn += 1e-6
+				near[0].Skew, near[1].Skew = turn, -turn
+				s.update(near)
+				s.covariance(m.ports, v, h)
+			}
+			b.ReportMetric(float64(len(s.nodes)), "directions")
+		})
+	}
+}

@@ -91,7 +91,18 @@ func (m *mount) split() {
 	}
 	if !found {
 		m.twin = nil
+		return
 	}
+	// First rows before second rows: V apart from H, so that what scatters apart stands apart in the matrices.
+	slices.SortStableFunc(m.twin, func(a, b port) int {
+		second := func(p port) int {
+			if p.local == -2 {
+				return 1
+			}
+			return 0
+		}
+		return second(a) - second(b)
+	})
 }
 
 // twins turns P of each pair against the skew of its body, again a unitary mixture, so that its rows see V and H of the

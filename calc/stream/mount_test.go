@@ -421,6 +421,17 @@ func TestStandardErrorHoldsThePlans(t *testing.T) {
 	}
 }
 
+func TestALooserErrorIsKept(t *testing.T) {
+	near, far := row(2, 0.5)
+	s := link(class(scatter.RuralMacro, true), 25)
+	full := planned(t, s, near, far)
+	s.StandardError = 0.05
+	loose := planned(t, s, near, far)
+	if loose.StandardError > 0.05 || loose.StandardError <= full.StandardError || math.Abs(loose.BitsPerSHz-full.BitsPerSHz) > 5*loose.StandardError {
+		t.Errorf("%v ± %v, in full %v ± %v", loose.BitsPerSHz, loose.StandardError, full.BitsPerSHz, full.StandardError)
+	}
+}
+
 func TestSharedPower(t *testing.T) {
 	// Shared over N near ports is per chain at ρ/N, and its single pair has all of it.
 	one, two := []antenna.Body{omni(0, 0, 0)}, []antenna.Body{omni(0, 0, 0), omni(0.1, 0, 0)}

@@ -297,7 +297,7 @@ func (p *points) triangulate(out []complex128, u []float64) {
 		h := ws.h[k*rows : (k+1)*rows]
 		for i := range rows {
 			r := k*rows + i
-			h[i] = c.mean[r] + product(c.lower[r*(r+1)/2:][:r+1], out)
+			h[i] = c.mean[r] + c.row(r, out)
 		}
 		// L⁻¹h_k joins the basis of each group that still has columns to come.
 		for g, l := range ws.block {

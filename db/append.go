@@ -130,6 +130,7 @@ type writer struct {
 	sentMs    sql.NullInt64
 	epoch     int64
 	head      Head
+	desk      string // the device under which this server writes
 	jobsGrown []string
 	authors   map[string]*Person // nil: nobody
 }
@@ -139,6 +140,9 @@ func (s *Store) newWriter(ctx context.Context, tx *sql.Tx, by Person, sentMs int
 		sentMs: sql.NullInt64{Int64: sentMs, Valid: sentMs != 0}, authors: map[string]*Person{}}
 	var err error
 	if w.epoch, err = epoch(ctx, tx); err != nil {
+		return nil, err
+	}
+	if w.desk, err = metaValue(ctx, tx, "desk_device"); err != nil {
 		return nil, err
 	}
 	w.head, err = head(ctx, tx)
@@ -164,6 +168,10 @@ func (w *writer) take(a arrival) (Answer, error) {
 		case stored != "":
 			refusal = refuse(IDReused, "an entry with this id and other content is in the log")
 		}
+	}
+	if refusal == nil && a.entry.Device == w.desk {
+		// Every phone that pulled a plan knows the name. A number taken here would be missing to the desk's own next entry.
+		refusal = refuse(NotAllowed, "this device is the server's own; what is uploaded comes from another one")
 	}
 	var err error
 	if refusal == nil {
@@ -374,7 +382,7 @@ func (w *writer) setApart(a arrival, why *Refusal) error {
 		}
 	}
 	device, deviceSeq := e.Device, e.DeviceSeq
-	if !isUUID(device, 0) || deviceSeq < 1 {
+	if !isUUID(device, 0) || deviceSeq < 1 || device == w.desk {
 		device, deviceSeq = "", 0
 	}
 	result, err := w.tx.ExecContext(w.ctx, `

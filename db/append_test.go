@@ -300,6 +300,9 @@ func TestWhatIsSetApart(t *testing.T) {
 		{"device_seq 0", func(b *bench, p *phone) (Person, Incoming) {
 			return b.tam, p.write(b.job, NoteAdded, note("x"), set("device_seq", 0))
 		}, Malformed},
+		{"a device_seq beyond what a phone counts", func(b *bench, p *phone) (Person, Incoming) {
+			return b.tam, p.write(b.job, NoteAdded, note("x"), set("device_seq", int64(1)<<53), set("prev", strings.Repeat("a", 64)))
+		}, Malformed},
 		{"device_seq with a fraction", func(b *bench, p *phone) (Person, Incoming) {
 			return b.tam, p.write(b.job, NoteAdded, note("x"), set("device_seq", 1.5))
 		}, Malformed},
@@ -628,4 +631,35 @@ func TestTheChainIsCheckedWithinABatch(t *testing.T) {
 		t.Errorf("answers %+v", r.Answers)
 	}
 	b.proved()
+}
+
+// The desk's device stands in every plan that a phone brings. Whoever wrote under its name could take the number of the
+// desk's next entry, or the last number there is, and no job could be planned or signed off any more.
+func TestNobodyWritesUnderTheDesksDevice(t *testing.T) {
+	for _, seq := range []int64{2, 3, maxDeviceSeq} {
+		b := openBench(t)
+		b.stored(b.tam, newPhone(b.tam).write(b.job, JobHandedIn, handBody))
+		var plan string
+		if err := b.read.QueryRow("SELECT raw FROM entries WHERE kind = 'job.planned'").Scan(&plan); err != nil {
+			t.Fatal(err)
+		}
+		e, err := ReadEntry(plan)
+		if err != nil {
+			t.Fatal(err)
+		}
+		p := newPhone(b.tam)
+		bad := p.write(b.job, NoteAdded, note("x"), set("device", e.Device), set("device_seq", seq), set("prev", HashOf(plan)))
+		if r := b.append(b.tam, bad); r.Answers[0].Status != Quarantined || r.Answers[0].Code != NotAllowed {
+			t.Errorf("number %d: %+v", seq, r.Answers[0])
+		}
+		b.proved()
+		if _, err := b.AppendDesk(t.Context(), b.desk, []DeskEntry{{ID: newID(), Job: b.job, Kind: JobSignedOff,
+			Body: Decision{BaseSeq: b.jobNow().StageSeq}}}); err != nil {
+			t.Errorf("after number %d the desk cannot sign off: %v", seq, err)
+		}
+		if proof, err := b.Prove(t.Context()); err != nil || len(proof.Gaps) > 0 {
+			t.Errorf("number %d: the desk misses entries: %+v (%v)", seq, proof.Gaps, err)
+		}
+		b.proved()
+	}
 }

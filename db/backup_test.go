@@ -101,6 +101,10 @@ func TestARestoredServerIsToldAgain(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
+	desk, err := metaValue(t.Context(), b.read, "desk_device")
+	if err != nil {
+		t.Fatal(err)
+	}
 	b.Close()
 
 	now := b.clock.now().Add(time.Hour)
@@ -118,6 +122,9 @@ func TestARestoredServerIsToldAgain(t *testing.T) {
 	state, err := b.State(t.Context())
 	if err != nil || state.Instance != before.Instance || state.Epoch != before.Epoch+1 || state.Head != result.Proof.Head {
 		t.Errorf("state %+v (%v)", state, err)
+	}
+	if now, err := metaValue(t.Context(), b.read, "desk_device"); err != nil || now == desk {
+		t.Errorf("the desk goes on with the chain of %s (%v), whose numbers after the backup are known elsewhere", now, err)
 	}
 	if _, _, err := b.Session(t.Context(), token); !errors.Is(err, ErrNoSession) {
 		t.Errorf("a session outlived the restore: %v", err)

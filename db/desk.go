@@ -26,13 +26,9 @@ func (s *Store) AppendDesk(ctx context.Context, by Person, entries []DeskEntry) 
 		if err != nil {
 			return err
 		}
-		device, err := metaValue(ctx, tx, "desk_device")
-		if err != nil {
-			return err
-		}
 		r = Receipt{}
 		for _, d := range entries {
-			answer, err := w.takeDesk(s, device, d)
+			answer, err := w.takeDesk(s, d)
 			if err != nil {
 				return err
 			}
@@ -47,7 +43,7 @@ func (s *Store) AppendDesk(ctx context.Context, by Person, entries []DeskEntry) 
 	return r, nil
 }
 
-func (w *writer) takeDesk(s *Store, device string, d DeskEntry) (Answer, error) {
+func (w *writer) takeDesk(s *Store, d DeskEntry) (Answer, error) {
 	text, err := json.Marshal(d.Body, json.Deterministic(true))
 	if err != nil {
 		return Answer{}, err
@@ -68,11 +64,11 @@ func (w *writer) takeDesk(s *Store, device string, d DeskEntry) (Answer, error) 
 		return Answer{}, err
 	}
 	env := deskEnvelope{
-		ID: d.ID, Device: device, DeviceSeq: 1, Job: d.Job, Kind: d.Kind, Schema: 1,
+		ID: d.ID, Device: w.desk, DeviceSeq: 1, Job: d.Job, Kind: d.Kind, Schema: 1,
 		At: s.now().Format(time.RFC3339), Author: w.by.ID, App: s.app, Body: rawJSON(text),
 	}
 	err = w.tx.QueryRowContext(w.ctx,
-		"SELECT device_seq + 1, hash FROM entries WHERE device = ? ORDER BY device_seq DESC LIMIT 1", device).
+		"SELECT device_seq + 1, hash FROM entries WHERE device = ? ORDER BY device_seq DESC LIMIT 1", w.desk).
 		Scan(&env.DeviceSeq, &env.Prev)
 	if err != nil && err != sql.ErrNoRows {
 		return Answer{}, err

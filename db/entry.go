@@ -82,6 +82,10 @@ const (
 	maxText = 4000
 )
 
+// maxDeviceSeq is the largest whole number that a phone's JavaScript counts to without a gap (ECMA-262,
+// Number.MAX_SAFE_INTEGER). Near the end of int64 the numbers beside one's own would not exist.
+const maxDeviceSeq = 1<<53 - 1
+
 // ReadEntry reads the text of an entry. The error is a *Refusal; the Entry holds what could be read even then, so that
 // a quarantined text can be found by its job and device.
 func ReadEntry(raw string) (Entry, error) {
@@ -124,8 +128,8 @@ func readEntry(raw string) (Entry, any, error) {
 		return e, nil, refuse(Malformed, "id is not a UUID of version 7 in lower case")
 	case !isUUID(e.Device, 0):
 		return e, nil, refuse(Malformed, "device is not a UUID in lower case")
-	case e.DeviceSeq < 1:
-		return e, nil, refuse(Malformed, "device_seq counts from 1")
+	case e.DeviceSeq < 1 || e.DeviceSeq > maxDeviceSeq:
+		return e, nil, refuse(Malformed, "device_seq counts from 1, and no phone counts beyond 2^53")
 	case e.DeviceSeq == 1 && e.Prev != "":
 		return e, nil, refuse(Malformed, "the first entry of a device has no entry before it, so prev is empty")
 	case e.DeviceSeq > 1 && !isHash(e.Prev):

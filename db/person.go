@@ -164,15 +164,42 @@ func (s *Store) Invite(ctx context.Context, by, role, crew string) (token string
 	token = newToken()
 	now := s.nowMs()
 	until = timeOf(now).Add(InvitationLife)
+	err = s.inTx(ctx, func(tx *sql.Tx) error { return s.invite(ctx, tx, token, by, role, crew, now, until) })
+	return token, until, err
+}
+
+// InviteFirst makes the invitation of the first supervisor and withdraws those that were made at the machine for a
+// supervisor before and not used: each start on an empty database prints one, and an older one, read from a log, must
+// not open the door once somebody is inside.
+func (s *Store) InviteFirst(ctx context.Context) (token string, until time.Time, err error) {
+	token = newToken()
+	now := s.nowMs()
+	until = timeOf(now).Add(InvitationLife)
 	err = s.inTx(ctx, func(tx *sql.Tx) error {
-		if _, err := tx.ExecContext(ctx, `
-			INSERT INTO invitations (token_hash, role, crew, made_by, made_ms, until_ms) VALUES (?, ?, ?, ?, ?, ?)`,
-			tokenHash(token), role, orNull(crew), orNull(by), now, until.UnixMilli()); err != nil {
+		result, err := tx.ExecContext(ctx,
+			"UPDATE invitations SET used_ms = ? WHERE made_by IS NULL AND role = ? AND used_ms IS NULL", now, Supervisor)
+		if err != nil {
 			return err
 		}
-		return s.audit(ctx, tx, by, "invitation made", role+" "+crew)
+		if n, err := result.RowsAffected(); err != nil {
+			return err
+		} else if n > 0 {
+			if err := s.audit(ctx, tx, "", "invitations withdrawn", Supervisor); err != nil {
+				return err
+			}
+		}
+		return s.invite(ctx, tx, token, "", Supervisor, "", now, until)
 	})
 	return token, until, err
+}
+
+func (s *Store) invite(ctx context.Context, tx *sql.Tx, token, by, role, crew string, nowMs int64, until time.Time) error {
+	if _, err := tx.ExecContext(ctx, `
+		INSERT INTO invitations (token_hash, role, crew, made_by, made_ms, until_ms) VALUES (?, ?, ?, ?, ?, ?)`,
+		tokenHash(token), role, orNull(crew), orNull(by), nowMs, until.UnixMilli()); err != nil {
+		return err
+	}
+	return s.audit(ctx, tx, by, "invitation made", role+" "+crew)
 }
 
 // InvitationOpen tells whether a token can still be used, before an expensive hash is made for it.

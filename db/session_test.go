@@ -170,6 +170,37 @@ func TestAnInvitationWorksOnce(t *testing.T) {
 	}
 }
 
+// A server that starts twice on an empty database prints two links; only the later one may work, also after somebody
+// came in by it. What a supervisor invited is not touched.
+func TestTheFirstInvitationWithdrawsTheOneBefore(t *testing.T) {
+	b := openBench(t)
+	kept, _, err := b.Invite(t.Context(), b.desk.ID, Supervisor, "")
+	if err != nil {
+		t.Fatal(err)
+	}
+	crew, _, err := b.Invite(t.Context(), "", Climber, "north")
+	if err != nil {
+		t.Fatal(err)
+	}
+	old, _, err := b.InviteFirst(t.Context())
+	if err != nil {
+		t.Fatal(err)
+	}
+	latest, _, err := b.InviteFirst(t.Context())
+	if err != nil {
+		t.Fatal(err)
+	}
+	if _, err := b.Accept(t.Context(), old, "Old", "x"); !errors.Is(err, ErrInvitation) {
+		t.Errorf("the link of the first start: %v", err)
+	}
+	for name, token := range map[string]string{"Latest": latest, "Kept": kept, "Crew": crew} {
+		if _, err := b.Accept(t.Context(), token, name, "x"); err != nil {
+			t.Errorf("%s: %v", name, err)
+		}
+	}
+	b.proved()
+}
+
 func TestAnInvitationRunsOut(t *testing.T) {
 	b := openBench(t)
 	token, _, err := b.Invite(t.Context(), "", Supervisor, "")

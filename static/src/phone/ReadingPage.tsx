@@ -75,7 +75,11 @@ function Entering(props: EnteringProps) {
   const [busy, setBusy] = useState(false);
   const [trouble, setTrouble] = useState<string | null>(null);
   const mainInput = useRef<HTMLInputElement>(null);
-  useEffect(() => mainInput.current?.focus({ preventScroll: true }), []);
+  useEffect(() => {
+    mainInput.current?.focus({ preventScroll: true });
+    // On a low screen the whole of what is asked comes into sight, not just the edge of its field.
+    mainInput.current?.closest('.measured')?.scrollIntoView({ block: 'nearest' });
+  }, []);
 
   const checked = useMemo(() => check(quantity, draft, datum, asked), [quantity, draft, datum, asked]);
   const sign = quantity === 'position' ? 'mm' : '°';

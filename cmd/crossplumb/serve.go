@@ -128,7 +128,7 @@ func inviteFirst(ctx context.Context, store *db.Store, origin string, to io.Writ
 	if err != nil || somebody {
 		return err
 	}
-	token, until, err := store.Invite(ctx, "", db.Supervisor, "")
+	token, until, err := store.InviteFirst(ctx)
 	if err != nil {
 		return err
 	}

@@ -148,9 +148,14 @@ func TestFoldAddsObstacles(t *testing.T) {
 	if len(bare.Items) != 1 {
 		t.Errorf("where the plan has none: %d obstacles", len(bare.Items))
 	}
+	for _, none := range []string{`{"name": "crane", "at_m": 99999, "top_m": 71}`, `{"name": "crane", "at_m": 1200}`, `{"at_m": -3, "top_m": 9}`} {
+		out := folded(t, doc, `[{"kind": "obstacle.noted", "body": `+none+`}]`)
+		if n := len(out.Get("path").Get("obstacles").Items); n != 1 {
+			t.Errorf("%s is no obstacle of this path: %d obstacles", none, n)
+		}
+	}
 	for _, bad := range []string{
-		`{"kind": "obstacle.noted", "body": {"name": "crane", "at_m": 99999, "top_m": 71}}`,
-		`{"kind": "obstacle.noted", "body": {"name": "crane", "at_m": 1200}}`,
+		`{"kind": "obstacle.noted"}`,
 		`{"kind": "figures.read", "body": {"end": "middle", "page": {}}}`,
 		`{"kind": "figures.read", "body": {"end": "near", "page": 3}}`,
 	} {

@@ -434,6 +434,8 @@ func aimPath(v *codec.Value) (answer, *Problem) {
 	k, gradient := f.MaybeNumber("k_factor", kFactor), f.MaybeNumber("delta_n", codec.Range{Min: -300, Max: 150, Suggestion: "median refractivity gradient in N-units per km, 45 where nothing better is known"})
 	power := f.MaybeNumber("tx_power_dbm", codec.Between(-60, 80))
 	powers := f.MaybeNumbers("tx_powers_dbm", 1, sheet.MaxPorts, codec.Between(-60, 80))
+	shared := f.MaybeNumber("tx_power_shared_dbm", codec.Between(-60, 80))
+	chains := f.NumberOr("chains", 1, codec.Whole(1, sheet.MaxPorts))
 	gain := codec.Between(-40, 80)
 	nearGain, farGain := f.MaybeNumber("near_gain_dbi", gain), f.MaybeNumber("far_gain_dbi", gain)
 	loss := codec.Range{Min: 0, Max: 60, Suggestion: "a loss is given as a positive number"}
@@ -476,6 +478,9 @@ func aimPath(v *codec.Value) (answer, *Problem) {
 		if power != nil && powers != nil {
 			f.Fail(f.Refuse("tx_powers_dbm", codec.Impossible, "give the power once: tx_power_dbm for one chain, tx_powers_dbm for several"))
 		}
+		if shared != nil && (power != nil || powers != nil) {
+			f.Fail(f.Refuse("tx_power_shared_dbm", codec.Impossible, "give the power once: what all chains share, or the power of each"))
+		}
 		if p.Distance < p.Wavelength {
 			f.Fail(f.Refuse("distance_m", codec.NotModelled, "the ends are within a wavelength of each other"))
 		}
@@ -484,6 +489,12 @@ func aimPath(v *codec.Value) (answer, *Problem) {
 		return nil, problem
 	}
 
+	if shared != nil { // each chain has its n-th part
+		powers = make([]float64, int(chains))
+		for i := range powers {
+			powers[i] = *shared - 10*math.Log10(chains)
+		}
+	}
 	free := aim.FreeSpaceLoss(p.SlantRange(), p.Wavelength)
 	diffraction, edges := p.Diffraction(obstacles)
 	uDiffraction := p.DiffractionDoubt(obstacles)

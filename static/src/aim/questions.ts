@@ -40,7 +40,7 @@ export function portsOf(antennas: readonly Antenna[]): string[] {
 export function pathQuestion(sheet: Sheet, distance_m: number | null): Record<string, unknown> {
   const { near_at, far_at, k_factor, obstacles } = sheet.path;
   const heights = near_at && far_at;
-  const powers = sheet.radio.power === 'shared' ? null : powersOf(sheet);
+  const shared = sheet.radio.power === 'shared' ? (sheet.radio.tx_power_dbm?.[0] ?? null) : null;
   return {
     frequency_mhz: sheet.radio.frequency_mhz,
     distance_m: distance_m ?? sheet.path.distance_m,
@@ -51,7 +51,7 @@ export function pathQuestion(sheet: Sheet, distance_m: number | null): Record<st
     obstacles: heights ? (obstacles ?? []) : [],
     near_gain_dbi: sheet.near.antennas[0]?.pattern.gain_dbi ?? null,
     far_gain_dbi: sheet.far.antennas[0]?.pattern.gain_dbi ?? null,
-    tx_powers_dbm: powers,
+    ...(shared === null ? { tx_powers_dbm: powersOf(sheet) } : { tx_power_shared_dbm: shared, chains: portsOf(sheet.near.antennas).length }),
   };
 }
 

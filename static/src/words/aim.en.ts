@@ -27,6 +27,7 @@ export const aimEn = {
   'aim.west': 'west',
   'aim.gross-only': 'A compass on a steel mast finds gross errors only. It alone never makes go on azimuth.',
   'aim.find': 'Find the bearing up here',
+  'aim.find-out': 'Not known yet? Crossplumb works it out:',
   'aim.to-sun': 'By the sun’s shadow',
   'aim.to-landmark': 'By a landmark',
   'aim.to-compass': 'Compass, against gross errors',

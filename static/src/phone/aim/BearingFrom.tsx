@@ -12,6 +12,9 @@ export function BearingFrom({ job, mount, compass }: { job: string; mount: strin
           {say('compass.typed')}
         </Message>
       )}
+      <p>
+        <strong>{say('aim.find-out')}</strong>
+      </p>
       <div class="buttons">
         <Button extra="grow" href={hrefOf({ page: 'sun', job, mount })}>
           {say('aim.to-sun')}

@@ -41,8 +41,9 @@ function Along({ open, form, job: jobId, mount: mountId }: Address & { open: Aim
   const top = numberIn(form, 'top');
   const u = numberIn(form, 'u');
   const obstacle: Obstacle | null = at === null || top === null ? null : { name: form.text('name').trim() || null, at_m: at, top_m: top, ...(u === null ? {} : { u_m: u }) };
-  // The path with the new obstacle is asked before it is kept: what calc refuses is told beside its field.
-  const tried = useReckoned<PathAnswer>(ask, 'aim.path', obstacle && heights ? pathQuestion({ ...sheet, path: { ...sheet.path, obstacles: [obstacle] } }, distance) : null);
+  // The path with the new obstacle is asked before it is kept: what calc refuses is told beside its field. Where plan and
+  // coordinates give two lengths, it has to stand within both.
+  const tried = useReckoned<PathAnswer>(ask, 'aim.path', obstacle && heights ? pathQuestion({ ...sheet, path: { ...sheet.path, obstacles: [obstacle] } }, Math.min(distance ?? Infinity, sheet.path.distance_m)) : null);
   const noted = standingOf(entries, mountId, 'obstacle.noted');
   const plannedCount = mount.sheet.path.obstacles?.length ?? 0;
   const place = { job: jobId, mount: mountId };

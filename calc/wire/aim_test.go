@@ -202,9 +202,9 @@ func TestAimPath(t *testing.T) {
 	// 23 dBm over four chains are 17 dBm each (10 log 4 = 6.02).
 	s := ask(t, "aim.path", `{"frequency_mhz":6000,"distance_m":10000,"near_height_m":50,"far_height_m":50,"tx_power_shared_dbm":23,"chains":4,"near_gain_dbi":28,"far_gain_dbi":30}`)
 	one := ask(t, "aim.path", `{"frequency_mhz":6000,"distance_m":10000,"near_height_m":50,"far_height_m":50,"tx_power_dbm":23,"near_gain_dbi":28,"far_gain_dbi":30}`)
-	levels := s["expected_levels_dbm"].([]any)
-	if len(levels) != 4 || math.Abs(levels[3].(float64)-one["expected_level_dbm"].(float64)+6.0206) > 1e-4 {
-		t.Errorf("shared power: %v beside %v", levels, one["expected_level_dbm"])
+	quarters := s["expected_levels_dbm"].([]any)
+	if len(quarters) != 4 || math.Abs(quarters[3].(float64)-one["expected_level_dbm"].(float64)+6.0206) > 1e-4 {
+		t.Errorf("shared power: %v beside %v", quarters, one["expected_level_dbm"])
 	}
 	c := ask(t, "aim.path", `{"frequency_mhz":6000,"distance_m":10000,"near_height_m":50,"far_height_m":70,"delta_n":45,"tx_powers_dbm":[20,17],"near_gain_dbi":28,"far_gain_dbi":30}`)
 	within(t, "k of 45 N-units", figure(t, c, "k_factor"), 8930.776786/6371, 1e-9)

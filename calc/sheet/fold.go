@@ -8,7 +8,9 @@ import "crossplumb/calc/codec"
 //   - reading.taken adds its reading to the phase, antenna and quantity it names;
 //     readings are pooled, a new one never replaces an old one.
 //   - bolt.moved drops the as-left readings of its antenna and quantity so far:
-//     they speak of a place where the antenna no longer is.
+//     they speak of a place where the antenna no longer is. Until it is read again
+//     its as_left is an empty list, so that what was found is not taken for what is
+//     there now.
 //   - reading.withdrawn takes away the reading whose entry it names, and likewise
 //     figures and obstacles.
 //   - figures.read puts the page of one end into the radio figures: the last one of
@@ -59,6 +61,7 @@ func Fold(doc *codec.Value, entries []*codec.Value) (*codec.Value, *codec.Proble
 type book struct {
 	antennas map[string]*codec.Value
 	pages    map[page][]line
+	turned   map[page]bool // bolt moved, whether read again or not
 	survey
 }
 
@@ -80,7 +83,7 @@ func fieldOf(quantity string) string {
 var quantities = []string{"skew", "tilt", "azimuth", "position"}
 
 func openBook(doc *codec.Value) *book {
-	b := &book{map[string]*codec.Value{}, map[page][]line{}, openSurvey(doc)}
+	b := &book{map[string]*codec.Value{}, map[page][]line{}, map[page]bool{}, openSurvey(doc)}
 	list := doc.Get("near").Get("antennas")
 	if list == nil {
 		return b // a probe has no antennas
@@ -96,6 +99,7 @@ func openBook(doc *codec.Value) *book {
 				case there.Kind == codec.Object:
 					b.pages[page{id, q, state}] = []line{{"", there}}
 				default:
+					b.turned[page{id, q, state}] = len(there.Items) == 0
 					for _, r := range there.Items {
 						b.pages[page{id, q, state}] = append(b.pages[page{id, q, state}], line{"", r})
 					}
@@ -178,6 +182,7 @@ func (b *book) move(item, body *codec.Value) *codec.Problem {
 		return f.Refuse("antenna", codec.Impossible, "the sheet has no near antenna of this name")
 	}
 	delete(b.pages, p)
+	b.turned[p] = true
 	return nil
 }
 
@@ -198,11 +203,11 @@ func (b *book) close(doc *codec.Value) *codec.Value {
 			}
 			states = copyOf(states)
 			for _, state := range []string{"as_found", "as_left"} {
-				lines := b.pages[page{a.Get("id").Str, q, state}]
+				p := page{a.Get("id").Str, q, state}
 				readings := codec.Nothing()
-				if len(lines) > 0 {
+				if len(b.pages[p]) > 0 || b.turned[p] {
 					readings = codec.Seq()
-					for _, l := range lines {
+					for _, l := range b.pages[p] {
 						readings.Items = append(readings.Items, l.reading)
 					}
 				}

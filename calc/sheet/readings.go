@@ -31,7 +31,16 @@ func readAngles(v *codec.Value, to *AngleStates, q quantity) *codec.Problem {
 			*state.to = append(*state.to, a)
 		}
 	}
+	to.Turned = emptied(v)
 	return f.Done()
+}
+
+// emptied tells whether as_left is an empty list. Null says that nobody spoke of
+// what is left; the empty list, as Fold writes it, that a bolt moved and what was
+// read before no longer holds.
+func emptied(states *codec.Value) bool {
+	left := states.Get("as_left")
+	return left != nil && left.Kind == codec.List && len(left.Items) == 0
 }
 
 func readAngle(v *codec.Value, q quantity, planned bool) (Angle, *codec.Problem) {
@@ -133,6 +142,7 @@ func readPositions(v *codec.Value, to *PositionStates) *codec.Problem {
 			*state.to = append(*state.to, p)
 		}
 	}
+	to.Turned = emptied(v)
 	return f.Done()
 }
 

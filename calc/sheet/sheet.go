@@ -133,6 +133,7 @@ type AngleStates struct {
 	Planned Angle
 	AsFound []Angle
 	AsLeft  []Angle
+	Turned  bool // as_left stands there empty: the bolt moved and nothing was read since
 }
 
 // At returns the readings of a state; the plan is a list of one.
@@ -151,6 +152,7 @@ type PositionStates struct {
 	Planned Position
 	AsFound []Position
 	AsLeft  []Position
+	Turned  bool // as_left stands there empty: the bolt moved and nothing was read since
 }
 
 // At returns the readings of a state; the plan is a list of one.

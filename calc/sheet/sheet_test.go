@@ -3,6 +3,7 @@ package sheet_test
 import (
 	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 
@@ -213,6 +214,9 @@ func TestFold(t *testing.T) {
 			b := &s.Near.Antennas[1]
 			if len(b.Skew.AsLeft) != len(row.left) || len(b.Skew.AsFound) != row.found {
 				t.Fatalf("as left %+v, as found %+v", b.Skew.AsLeft, b.Skew.AsFound)
+			}
+			if turned := len(row.left) == 0 && slices.Contains(row.entries, move); b.Skew.Turned != turned {
+				t.Errorf("turned %v, want %v", b.Skew.Turned, turned)
 			}
 			for i, want := range row.left {
 				if b.Skew.AsLeft[i].Deg != want {

@@ -41,11 +41,11 @@ func (j *judge) geometry(beliefs [3]*belief, judged sheet.State) Geometry {
 	g := Geometry{WavelengthMM: wavelength * 1000}
 	for i := range j.near {
 		a := AntennaGeometry{ID: j.bodies[i].antenna.ID, Planned: j.place(j.plan, nil, i)}
-		if beliefs[sheet.AsFound].readings > 0 {
+		if beliefs[sheet.AsFound].stands {
 			p := j.place(beliefs[sheet.AsFound].values(), beliefs[sheet.AsFound], i)
 			a.AsFound = &p
 		}
-		if beliefs[sheet.AsLeft].readings > 0 {
+		if beliefs[sheet.AsLeft].stands {
 			p := j.place(beliefs[sheet.AsLeft].values(), beliefs[sheet.AsLeft], i)
 			a.AsLeft = &p
 		}

@@ -75,7 +75,8 @@ type judge struct {
 }
 
 // Judge computes the verdict of a sheet. The state judged is the latest one that
-// has any reading of the near end. A problem says that the sheet asks for nothing
+// has any reading of the near end, or as left where a bolt moved after what was
+// found was read. A problem says that the sheet asks for nothing
 // that applies, or that its readings can not be true together.
 func Judge(s *sheet.Sheet) (*Verdict, *codec.Problem) {
 	j, p := newJudge(s)
@@ -96,7 +97,7 @@ func Judge(s *sheet.Sheet) (*Verdict, *codec.Problem) {
 	}
 	v := &Verdict{Judged: sheet.Planned, Sight: s.Surroundings.Sight, Around: around(s)}
 	for st := sheet.AsLeft; st > sheet.Planned; st-- {
-		if beliefs[st].readings > 0 {
+		if beliefs[st].stands {
 			v.Judged = st
 			break
 		}
@@ -115,10 +116,10 @@ func Judge(s *sheet.Sheet) (*Verdict, *codec.Problem) {
 		}
 	}
 	v.Word = j.word(b, o.joint)
-	if beliefs[sheet.AsFound].readings > 0 {
+	if beliefs[sheet.AsFound].stands {
 		v.AsFound = j.stateOutcome(beliefs[sheet.AsFound], v, o)
 	}
-	if beliefs[sheet.AsLeft].readings > 0 {
+	if beliefs[sheet.AsLeft].stands {
 		v.AsLeft = j.stateOutcome(beliefs[sheet.AsLeft], v, o)
 	}
 	if v.Word != Go && v.Judged != sheet.Planned {

@@ -202,6 +202,7 @@ type belief struct {
 	est        []doubt.Estimate // one for each number of each body
 	measured   []bool           // read, or exact by convention
 	readings   int              // of the near end
+	stands     bool             // there is something to judge: readings, or a bolt that moved
 	looks      []int            // readings pooled for each number
 	incomplete bool             // a reading of the near end is missing
 
@@ -250,8 +251,20 @@ func (m *model) believe(state sheet.State) (*belief, *codec.Problem) {
 		}
 		m.correctLevel(b, i, st)
 	}
+	b.stands = b.readings > 0 || state == sheet.AsLeft && m.turned()
 	b.incomplete = len(m.missing(b)) > 0
 	return b, m.apart(b)
+}
+
+// turned tells whether a near bolt moved and was not read again.
+func (m *model) turned() bool {
+	for i := range m.near {
+		a := m.bodies[i].antenna
+		if a.Skew.Turned || a.Tilt.Turned || a.Azimuth.Turned || a.Position.Turned {
+			return true
+		}
+	}
+	return false
 }
 
 // latest is the latest state of an antenna that has any reading.

@@ -410,8 +410,9 @@ func TestTheServerKilledWhilePhonesSend(t *testing.T) {
 	var waiting []string // bodies that were not answered
 	for range rounds {
 		ended := make(chan struct{})
+		after := time.Duration(random.IntN(150_000)) * time.Microsecond
 		go func() {
-			time.Sleep(time.Duration(random.IntN(150_000)) * time.Microsecond)
+			time.Sleep(after)
 			c.cmd.Process.Signal(syscall.SIGKILL)
 			close(ended)
 		}()

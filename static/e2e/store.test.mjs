@@ -142,6 +142,45 @@ test('a lost connection is opened once more', async () => {
   await store.closeDatabase();
 });
 
+test('a connection that is lost after the entry was written does not make it twice', async (t) => {
+  const store = await storeWindow();
+  await store.keepSession(SESSION);
+  await store.addEntry('note.added', JOB, null, { text: 'makes the device' });
+  const transaction = IDBDatabase.prototype.transaction;
+  let lost = false;
+  t.mock.method(IDBDatabase.prototype, 'transaction', function (names, mode, options) {
+    const tx = transaction.call(this, names, mode, options);
+    if (lost || mode !== 'readwrite' || !names.includes('outbox')) return tx;
+    lost = true;
+    // It completes, but the page is told that the connection is gone, as iOS does it.
+    const add = tx.addEventListener.bind(tx);
+    const gone = () => Object.defineProperty(tx, 'error', { value: new DOMException('connection to the server lost', 'UnknownError') });
+    tx.addEventListener = (type, listener) => {
+      if (type === 'abort') add('complete', () => (gone(), listener()));
+      else if (type !== 'complete') add(type, listener);
+    };
+    return tx;
+  });
+  const entry = await store.addEntry('note.added', JOB, null, { text: 'once' });
+  assert.ok(lost);
+  const logged = await store.ownEntries();
+  assert.deepEqual(logged.map((one) => one.entry.body.text), ['makes the device', 'once']);
+  assert.equal(logged[1].entry.id, entry.id);
+  assertChain(logged);
+  await store.closeDatabase();
+});
+
+test('an entry that went up late is read at the place that its device gave it', async () => {
+  const store = await storeWindow();
+  await store.keepSession(SESSION);
+  const made = [];
+  for (let i = 0; i < 4; i++) made.push((await store.addEntry('note.added', JOB, null, { text: `${i}` })).id);
+  const at = [10, 12, 11]; // the second came after the third; the fourth waits
+  await store.settle(at.map((seq, i) => ({ id: made[i], whereabouts: 'safe', seq, reason: null })));
+  assert.deepEqual((await store.entriesOf(JOB)).map((one) => one.entry.device_seq), [1, 2, 3, 4]);
+  await store.closeDatabase();
+});
+
 test('the stage follows from what waits here', async () => {
   const { stageAfter } = await storeWindow();
   for (const [from, kinds, to] of [

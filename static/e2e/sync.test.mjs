@@ -230,6 +230,89 @@ test('a server that knows less than it once said gets it again, also without a n
   assert.deepEqual(await phone.counts(), { waiting: 0, safe: 4, needsPerson: 0 });
 });
 
+test('a server that lost what it acknowledged a moment ago gets it again: its log is shorter than it was', async () => {
+  const ids = await notes(3);
+  await phone.push(); // the only look at the server's state was before the upload
+  server.stored.clear();
+  await phone.push();
+  assert.deepEqual([...server.stored.keys()], ids);
+});
+
+test('a restore between two batches of one sending is not overlooked', async () => {
+  const ids = await notes(60);
+  let batches = 0;
+  server.spoil = (url) => {
+    if (url === '/api/entries' && ++batches === 2) {
+      for (const id of ids.slice(10, 50)) server.stored.delete(id);
+      server.epoch = 2;
+    }
+    return null;
+  };
+  await phone.push();
+  assert.deepEqual([...server.stored.keys()].sort(), ids);
+  assert.deepEqual(await phone.counts(), { waiting: 0, safe: 60, needsPerson: 0 });
+});
+
+test('a job that comes without an entry that was called safe makes it go up again; what others wrote follows the server', async () => {
+  const [kept, gone] = await notes(2);
+  await phone.push();
+  const [first, second] = await phone.ownEntries();
+  const foreign = (id, device, device_seq) =>
+    JSON.stringify({ id, device, device_seq, prev: '', job: JOB, mount: null, kind: 'note.added', schema: 1, at: '2026-11-30T09:12:00+01:00', mono_ms: 1, author: 'u2', app: 'x', body: { text: 'theirs' } });
+  const summary = { id: JOB, site: 's', title: 't', crew: 'west', stage: 'issued', stage_seq: 2, visit_on: null, mounts: [], head_seq: 4, entries: 4, remark: null, handed_in_at: null, words: {} };
+  const plan = { site: 's', title: 't', crew: 'west', visit_on: null, access: null, emergency: null, lat_deg: null, lon_deg: null, mounts: [] };
+  const bring = async (...raws) => {
+    summary.head_seq++;
+    const entries = raws.map((raw, i) => ({ seq: i + 1, received_at: 'r', author_name: 'x', raw }));
+    server.spoil = (url) => (url === '/api/jobs' ? json({ jobs: [summary] }) : url.startsWith('/api/jobs/') ? json({ job: summary, plan, entries, mounts: [], quarantined: 0 }) : null);
+    await phone.pull();
+  };
+  await bring(first.raw, second.raw, foreign('0191e9a4-0000-7000-8000-00000000000a', 'd2', 7));
+  assert.equal((await phone.entriesOf(JOB)).length, 3);
+  assert.equal((await phone.counts()).waiting, 0);
+
+  // Copied back from an older file: our second is not there, and the other device has another entry under its number.
+  // Somebody wrote under our own device, too; that must not stop the job from coming.
+  await bring(first.raw, foreign('0191e9a4-0000-7000-8000-00000000000b', 'd2', 7), foreign('0191e9a4-0000-7000-8000-00000000000c', first.entry.device, 2));
+  assert.deepEqual((await phone.entriesOf(JOB)).map((one) => [one.entry.id, one.whereabouts]), [
+    [kept, 'safe'],
+    ['0191e9a4-0000-7000-8000-00000000000b', 'safe'],
+    [gone, 'waiting'],
+  ]);
+  assert.deepEqual((await phone.nextBatch(50, 1e6)).map((one) => one.id), [gone]);
+});
+
+test('what was set apart while another person was signed in goes up again when its author comes back', async () => {
+  const [mine] = await notes(1);
+  const apart = () => (url, body) =>
+    url === '/api/entries' ? json({ answers: body.entries.map(({ raw }) => ({ id: JSON.parse(raw).id, status: 'quarantined', seq: null, reason: 'unknown job' })), epoch: 1, head: server.head() }) : null;
+  await phone.keepSession({ ...SESSION, user: { ...SESSION.user, id: 'u9', crew: 'east' } });
+  server.spoil = apart();
+  await phone.push();
+  assert.deepEqual(await phone.counts(), { waiting: 0, safe: 0, needsPerson: 1 });
+  await phone.keepSession({ ...SESSION, user: { ...SESSION.user, id: 'u8', crew: 'east' } });
+  assert.equal((await phone.counts()).needsPerson, 1, 'a third person changes nothing');
+  await phone.keepSession(SESSION);
+  server.spoil = null;
+  await phone.push();
+  assert.deepEqual(await phone.counts(), { waiting: 0, safe: 1, needsPerson: 0 });
+  assert.equal(JSON.parse(server.stored.get(mine).raw).author, 'u1', 'and it is still of who made it');
+});
+
+test('a window learns that another one signed somebody else in', async (t) => {
+  const other = await openWindow('store/database', 'store/people', 'sync/session');
+  t.after(() => other.closeDatabase());
+  await other.readSession();
+  assert.equal(other.session.value.user.id, 'u1');
+  let told = 0;
+  other.session.watch(() => told++);
+  await phone.addEntry('note.added', JOB, null, { text: 'a change that is none of the session' });
+  await phone.keepSession({ ...SESSION, user: { ...SESSION.user, id: 'u2', name: 'Ivo' } });
+  for (let i = 0; i < 100 && other.session.value.user.id !== 'u2'; i++) await new Promise((resolve) => setTimeout(resolve, 20));
+  assert.equal(other.session.value.user.id, 'u2');
+  assert.equal(told, 1);
+});
+
 test('jobs come in with the entries of others, and own ones that come back are safe', async () => {
   const [mine] = await notes(1, 'mine');
   const raw = (await phone.ownEntries())[0].raw;

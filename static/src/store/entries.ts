@@ -91,6 +91,8 @@ function append(
   options: AddOptions,
 ): Promise<boolean> {
   return write(['entries', 'outbox', 'settings', 'drafts'], async (tx) => {
+    // A connection that was lost in the moment of committing is tried once more: what is there is not made twice.
+    if (await tx.objectStore('entries').get(entry.id)) return true;
     const device = (await tx.objectStore('settings').get('device')) as DeviceRow;
     if (device.id !== seen.id || device.next_seq !== seen.next_seq || device.head !== seen.head) return false;
     await tx.objectStore('entries').add({
@@ -132,12 +134,21 @@ function release(): string {
 }
 
 /**
- * The entries of a job on this phone, own and others': first what the server has, in its order, then what waits here,
- * in the order in which it was made.
+ * The entries of a job on this phone, own and others': first what the server has, in its order, then what waits here;
+ * but each device's entries by their own numbers, as the server reads them too. Else an entry that went up late (it had
+ * been set apart, or the server was restored) would make a bolt move after the reading that followed it.
  */
 export async function entriesOf(job: string): Promise<LoggedEntry[]> {
   const rows = await withDatabase((db) => db.getAllFromIndex('entries', 'by job', job));
-  return rows.sort(inOrder).map(logged);
+  return inDeviceOrder(rows.sort(inOrder)).map(logged);
+}
+
+/** Every device keeps the places that its entries have in the list, and fills them by its own numbers. */
+function inDeviceOrder(rows: readonly EntryRow[]): EntryRow[] {
+  const devices = new Map<string, EntryRow[]>();
+  for (const row of rows) devices.set(row.device, [...(devices.get(row.device) ?? []), row]);
+  for (const own of devices.values()) own.sort((a, b) => b.device_seq - a.device_seq);
+  return rows.map((row) => devices.get(row.device)?.pop() ?? row);
 }
 
 /** Every entry that was made on this phone, in order: for the person's own look, and for export. */

@@ -92,14 +92,33 @@ export interface PulledEntry {
   received_at: string | null;
 }
 
-/** Puts a job as the server has it beside what was made here. Own entries that come back are thereby safe. */
+/**
+ * Puts a job as the server has it beside what was made here. Own entries that come back are thereby safe; one that was
+ * called safe and does not come back is lost there (a disk that lied, a file that was copied back) and goes up again.
+ * Others' entries that the server does not have any more are not kept.
+ */
 export async function keepPulled(summary: JobSummary, plan: Plan, entries: PulledEntry[], now: string): Promise<void> {
   await write(['jobs', 'entries', 'outbox'], async (tx) => {
     const all = tx.objectStore('entries');
     await tx.objectStore('jobs').put({ id: summary.id, summary, plan, pulled_at: now });
+    const there = new Set(entries.map((pulled) => pulled.id));
+    for (const row of await all.index('by job').getAll(summary.id)) {
+      if (there.has(row.id)) continue;
+      if (row.own === 0) await all.delete(row.id);
+      else if (row.whereabouts === 'safe') {
+        await all.put({ ...row, whereabouts: 'waiting', seq: null });
+        await tx.objectStore('outbox').put({ device_seq: row.device_seq, id: row.id });
+      }
+    }
     for (const pulled of entries) {
       const held = await all.get(pulled.id);
-      if (held && held.hash !== pulled.hash) continue; // two texts under one id: the server shows it to a person; ours stays
+      // Two texts under one id, or two entries under one number of a device: the server shows it to a person; ours stays.
+      if (held?.own === 1 && held.hash !== pulled.hash) continue;
+      const numbered = await all.index('by device').get([pulled.device, pulled.device_seq]);
+      if (numbered && numbered.id !== pulled.id) {
+        if (numbered.own === 1) continue;
+        await all.delete(numbered.id);
+      }
       await all.put({
         id: pulled.id,
         device: pulled.device,
@@ -119,7 +138,7 @@ export async function keepPulled(summary: JobSummary, plan: Plan, entries: Pulle
   });
 }
 
-/** A job that is no longer the crew's leaves the list; entries made here stay, whatever the server says. */
+/** A job that is no longer the crew's leaves the phone with others' entries; those made here stay, whatever the server says. */
 export async function forgetJobs(kept: ReadonlySet<string>): Promise<boolean> {
   return write(['jobs', 'entries'], async (tx) => {
     const waiting = new Set((await tx.objectStore('entries').index('by whereabouts').getAll([1, 'waiting'])).map((e) => e.job));
@@ -127,6 +146,9 @@ export async function forgetJobs(kept: ReadonlySet<string>): Promise<boolean> {
     for (const id of await tx.objectStore('jobs').getAllKeys()) {
       if (kept.has(id) || waiting.has(id)) continue;
       await tx.objectStore('jobs').delete(id);
+      for (const row of await tx.objectStore('entries').index('by job').getAll(id)) {
+        if (row.own === 0) await tx.objectStore('entries').delete(row.id);
+      }
       gone = true;
     }
     return gone;

@@ -1,14 +1,25 @@
 // Who works on this phone. Kept here, so that a phone out of coverage knows its author for weeks; the server's own
 // session is a cookie that the page cannot read.
-import type { Session } from '../types.ts';
+import type { Entry, Session } from '../types.ts';
 import { changed, withDatabase, write } from './database.ts';
 
 export function keptSession(): Promise<Session | null> {
   return withDatabase(async (db) => ((await db.get('settings', 'session')) as Session | undefined) ?? null);
 }
 
+/**
+ * Keeps who signed in, and offers once more what of theirs the server had set apart: while somebody of another crew was
+ * signed in on this phone, their entries belonged to a job that this person may not see.
+ */
 export async function keepSession(session: Session): Promise<void> {
-  await write(['settings'], (tx) => tx.objectStore('settings').put(session, 'session'));
+  await write(['settings', 'entries', 'outbox'], async (tx) => {
+    await tx.objectStore('settings').put(session, 'session');
+    for (const row of await tx.objectStore('entries').index('by whereabouts').getAll([1, 'needs person'])) {
+      if ((JSON.parse(row.raw) as Entry).author !== session.user.id) continue;
+      await tx.objectStore('entries').put({ ...row, whereabouts: 'waiting', reason: null });
+      await tx.objectStore('outbox').put({ device_seq: row.device_seq, id: row.id });
+    }
+  });
   changed();
 }
 

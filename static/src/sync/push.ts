@@ -23,7 +23,8 @@ export async function push(): Promise<void> {
       const settled = answersFor(batch, answer);
       await settle(settled);
       const known = await knownServer();
-      await noteServer({ ...known, epoch: answer.epoch, head_seq: answer.head.seq, head_hash: answer.head.hash });
+      // Not the epoch: only compareEpoch may note another one, after it has drawn the consequence.
+      await noteServer({ ...known, head_seq: answer.head.seq, head_hash: answer.head.hash });
       if (settled.length === 0) throw new ServerProblem(200, 'silent', '', 'the server answered for none of the entries', null);
       if (known.epoch !== null && known.epoch !== answer.epoch) await compareEpoch();
       most = MOST;
@@ -63,8 +64,9 @@ export function answersFor(batch: Outgoing[], answer: UploadAnswer): Settled[] {
 }
 
 /**
- * A server with another epoch or identity, or one that knows less of this device than it once said, was restored or
- * replaced: what it no longer has is sent again. (A number that it never had is no reason: it may have been refused.)
+ * A server with another epoch or identity, one whose log is shorter than it once was, or one that knows less of this
+ * device than it once said, was restored or replaced: what it no longer has is sent again. (A number that it never had
+ * is no reason: it may have been refused.)
  */
 async function compareEpoch(): Promise<void> {
   const state = await ask('GET', '/api/state', undefined, isServerState);
@@ -72,7 +74,8 @@ async function compareEpoch(): Promise<void> {
   const own = await deviceId();
   const contiguous = (own === null ? undefined : state.devices[own]?.max_contiguous_seq) ?? 0;
   const other = known.instance !== null && (known.instance !== state.instance || known.epoch !== state.epoch);
-  if (other || contiguous < known.contiguous) {
+  const shorter = known.head_seq !== null && state.head.seq < known.head_seq; // a log only grows
+  if (other || shorter || contiguous < known.contiguous) {
     await sendAgainAfter(contiguous);
     await doubtHeads();
   }

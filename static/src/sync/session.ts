@@ -1,5 +1,6 @@
 // Signing in and out. The server's session is a cookie; the phone keeps who it was for, and works on without coverage.
 import type { Session } from '../types.ts';
+import { onChange } from '../store/database.ts';
 import { counts } from '../store/entries.ts';
 import { clearAfterSignOut, keepSession, keptSession } from '../store/people.ts';
 import { Observable } from '../store/observable.ts';
@@ -22,8 +23,16 @@ export class EntriesWait extends Error {
   }
 }
 
+let follows = false;
+
+/** Reads who signed in, now and after each change of the store: another window may have signed somebody else in, and entries bear that name. */
 export async function readSession(): Promise<void> {
-  observed.set(await keptSession());
+  if (!follows) {
+    follows = true;
+    onChange(() => void readSession().catch(() => undefined)); // that the store is gone is said by storeHealth
+  }
+  const kept = await keptSession();
+  if (JSON.stringify(kept) !== JSON.stringify(observed.value)) observed.set(kept);
 }
 
 /** Rejects with ServerProblem (wrong name or passphrase: 401) or NoAnswer. */

@@ -36,11 +36,11 @@ func (d doubtOf) of(q quantity) float64 {
 // steel around it, the same each time; a level or tape about half by its zero and
 // half by the hand that holds it (common practice).
 func biasShare(method string) float64 {
-	switch method {
-	case "compass":
-		return 0.9
-	case "phone":
+	switch {
+	case method == "phone":
 		return 0.75
+	case byCompass(method):
+		return 0.9
 	}
 	return 0.5
 }

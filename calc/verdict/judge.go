@@ -116,6 +116,11 @@ func Judge(s *sheet.Sheet) (*Verdict, *codec.Problem) {
 		}
 	}
 	v.Word = j.word(b, o.joint)
+	if v.Word == MeasureAgain && wordOf(o.joint) == Go {
+		for _, i := range j.restingOnCompass(b) {
+			v.Missing = append(v.Missing, Missing{j.bodies[i].antenna.ID, azimuth.String(), true})
+		}
+	}
 	if beliefs[sheet.AsFound].stands {
 		v.AsFound = j.stateOutcome(beliefs[sheet.AsFound], v, o)
 	}
@@ -210,11 +215,11 @@ func (j *judge) unjudged(why string) {
 }
 
 // word is the word for the probability of a belief. With a reading or a limit
-// missing it is never go; and with a reading missing it is no-go only where the
+// missing it is never go, nor where only a compass makes it so; and with a reading missing it is no-go only where the
 // mount would fail even if all that nobody measured hung exactly as planned.
 func (j *judge) word(b *belief, p float64) string {
 	w := wordOf(p)
-	if w == Go && (b.incomplete || j.notJudged()) {
+	if w == Go && (b.incomplete || j.notJudged() || j.restingOnCompass(b) != nil) {
 		return MeasureAgain
 	}
 	if w == NoGo && b.incomplete && wordOf(j.runEvery(j.atBest(b), 2).joint) != NoGo {

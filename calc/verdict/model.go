@@ -370,7 +370,7 @@ func (m *model) distance(x []float64, i, j int) float64 {
 // Missing is a reading that a complete state needs and this one lacks.
 type Missing struct {
 	Antenna, Quantity string
-	ByCompass         bool // read, but by compass alone
+	ByCompass         bool // read, but it rests on a compass
 }
 
 // missing lists the near readings that are not there.
@@ -382,7 +382,7 @@ func (m *model) missing(b *belief) []Missing {
 			if q == right { // one axis is a reading; the others keep the doubt of the eye
 				have = have || b.measured[m.at(i, up)] || b.measured[m.at(i, forward)]
 			}
-			steel := q == azimuth && have && m.byCompassOnly(i, b.state)
+			steel := q == azimuth && have && m.compassOnly(i, b.state)
 			if !have || steel {
 				out = append(out, Missing{m.bodies[i].antenna.ID, q.String(), steel})
 			}

@@ -144,7 +144,7 @@ func (j *judge) reason(v *Verdict, b *belief, o *outcome) Reason {
 		r.Code, r.Antenna, r.Quantity = MissingReading, v.Missing[0].Antenna, v.Missing[0].Quantity
 		r.Text = "Measure the " + r.Quantity + " of " + r.Antenna
 		if v.Missing[0].ByCompass {
-			r.Text = "The azimuth of " + r.Antenna + " is known by compass only: sight the sun or a landmark"
+			r.Text = "The azimuth of " + r.Antenna + " rests on a compass: sight the sun or a landmark"
 		}
 		if n := len(v.Missing); n > 1 {
 			r.Text += " (" + itoa(n) + " readings are missing)"

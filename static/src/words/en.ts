@@ -361,7 +361,7 @@ export const en = {
   'reason.doubt-limit': '{limit} {value} lies too near its limit for a word.',
   'reason.unjudged': '{limit} could not be judged.',
   'reason.missing': '{antenna} {quantity} is not read yet.',
-  'reason.missing-compass': '{antenna} azimuth is known by compass only. Sight the sun or a landmark.',
+  'reason.missing-compass': '{antenna} azimuth rests on a compass. Sight the sun or a landmark.',
   'reason.missing-more': { one: '{antenna} {quantity} is not read yet, and {n} more.', other: '{antenna} {quantity} is not read yet, and {n} more.' },
   'reason.missing-bare': 'A reading is still missing.',
   'reason.surroundings': 'The surroundings decide, not a reading: in another usual case of them the word would change.',

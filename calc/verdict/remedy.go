@@ -106,13 +106,14 @@ func (j *judge) remedies(b *belief, o *outcome) []Remedy {
 			continue
 		}
 		s := &after.summary[critical]
+		leans := j.bodies[m.body].symmetric
 		r := Remedy{
 			Antenna: j.bodies[m.body].antenna.ID, Quantity: m.q.String(), Axis: m.q.axis(), Unit: m.q.unit(),
-			Change: m.q.border(m.by), Direction: m.q.direction(m.by), Limit: j.limits[critical].Name,
+			Change: m.q.border(m.by), Direction: m.q.direction(m.by, leans), Limit: j.limits[critical].Name,
 			From: finite(before.Median), To: finite(s.Median),
 			ProbabilityAfter: after.joint, WordAfter: j.word(&moved, after.joint),
 		}
-		r.Text = remedyText(r, m.q)
+		r.Text = remedyText(r, m.q, leans)
 		out = append(out, r)
 	}
 	sort.SliceStable(out, func(a, b int) bool { return out[a].ProbabilityAfter > out[b].ProbabilityAfter })

@@ -331,6 +331,26 @@ func TestAnOmniLeansForward(t *testing.T) {
 	}
 }
 
+// TestTheLeanOfARodInWords: a rod has no boresight to tilt up or down; what helps one
+// that leans 6° forward and 4° to the right is to lean it back and to the left.
+func TestTheLeanOfARodInWords(t *testing.T) {
+	s := job(t, "two-omnis-half-wavelength")
+	s.Limits = []sheet.Limit{{Name: sheet.TiltDeviation, Value: 2}, {Name: sheet.SkewDeviation, Value: 2}}
+	for i := range s.Near.Antennas {
+		s.Near.Antennas[i].Tilt.AsLeft = []sheet.Angle{level(0, 0.1, "level 3")}
+		s.Near.Antennas[i].Skew.AsLeft = []sheet.Angle{level(0, 0.1, "level 3")}
+	}
+	b := &s.Near.Antennas[1]
+	b.Tilt.AsLeft[0].Deg = 6
+	if r := judged(t, s).Remedies[0]; r.Quantity != "tilt" || r.Change >= 0 || r.Direction != "back" || !strings.HasPrefix(r.Text, "Lean "+b.ID) || !strings.HasSuffix(r.Text, "° back") {
+		t.Errorf("leaning forward: %+v", r)
+	}
+	b.Tilt.AsLeft[0].Deg, b.Skew.AsLeft[0].Deg = 0, 4
+	if r := judged(t, s).Remedies[0]; r.Quantity != "skew" || r.Change >= 0 || r.Direction != "left" || !strings.HasSuffix(r.Text, "° to the left") {
+		t.Errorf("leaning right: %+v", r)
+	}
+}
+
 func TestReadingsInOnePlaceAreRefused(t *testing.T) {
 	s := job(t, "two-crossed-panels")
 	zero := 0.0

@@ -34,20 +34,32 @@ func (q quantity) axis() string {
 	return ""
 }
 
-// direction is the word for the sign of a change, as seen from behind.
-func (q quantity) direction(by float64) string {
+// direction is the word for the sign of a change, as seen from behind. What has no
+// boresight leans to a side and to the front instead of turning and tilting.
+func (q quantity) direction(by float64, leans bool) string {
 	pair := [quantities][2]string{
 		skew: {"clockwise", "anticlockwise"}, tilt: {"up", "down"}, azimuth: {"right", "left"},
 		right: {"right", "left"}, up: {"up", "down"}, forward: {"forward", "back"},
 	}[q]
+	if leans && q == skew {
+		pair = [2]string{"right", "left"}
+	} else if leans && q == tilt {
+		pair = [2]string{"forward", "back"}
+	}
 	if by < 0 {
 		return pair[1]
 	}
 	return pair[0]
 }
 
-func remedyText(r Remedy, q quantity) string {
+func remedyText(r Remedy, q quantity, leans bool) string {
 	amount := number(math.Abs(r.Change))
+	switch {
+	case leans && q == skew:
+		return "Lean " + r.Antenna + " " + amount + "° to the " + r.Direction
+	case leans && q == tilt:
+		return "Lean " + r.Antenna + " " + amount + "° " + r.Direction
+	}
 	switch q {
 	case skew:
 		return "Turn " + r.Antenna + " " + amount + "° " + r.Direction

@@ -6,7 +6,7 @@ import { figure, shortest } from '../words/figures.ts';
 import { t } from '../words/words.ts';
 import type { DrawnAntenna, DrawnPlace, DrawnSpacing } from './drawn.ts';
 import { type Layout, type Paper, layoutOf, paperFor, scaleBar } from './paper.ts';
-import { amountOf, turnAmount, wayOf } from './turn.ts';
+import { amountOf, leans, turnAmount, wayOf } from './turn.ts';
 import { useWidth } from './useWidth.ts';
 
 export interface MountDrawingProps {
@@ -502,7 +502,7 @@ function TurnSign({ remedy, x, y, under }: { remedy: Remedy; x: number; y: numbe
     case 'azimuth':
       return <Swing cx={x} y={y} sign={sign} />;
     case 'tilt':
-      return <Straight x={x} y={under ? y : y - 6} dx={0} dy={-sign} />;
+      return leans(remedy) ? <Straight x={x} y={y} {...heading(remedy)} /> : <Straight x={x} y={under ? y : y - 6} dx={0} dy={-sign} />;
     case 'position':
       return <Straight x={x} y={y} {...heading(remedy)} />;
   }

@@ -5,6 +5,7 @@ import { t } from '../words/words.ts';
 
 /** "clockwise", "up", "left" …: the sign of the change tells it for angles, calc names it for places. */
 export function wayOf(remedy: Remedy): string {
+  if (leans(remedy)) return placeWay(remedy.direction);
   const more = remedy.change >= 0;
   switch (remedy.quantity) {
     case 'skew':
@@ -16,6 +17,11 @@ export function wayOf(remedy: Remedy): string {
     case 'position':
       return placeWay(remedy.direction);
   }
+}
+
+/** A rod has no boresight: it leans to a side, forward or back, where a panel turns and tilts. */
+export function leans(remedy: Remedy): boolean {
+  return (remedy.quantity === 'skew' || remedy.quantity === 'tilt') && ['left', 'right', 'forward', 'back'].includes(remedy.direction);
 }
 
 function placeWay(direction: string): string {
@@ -47,5 +53,5 @@ export function turnAmount(remedy: Remedy): string {
 
 /** The whole instruction: "Turn B 6.2° anticlockwise". */
 export function turnSentence(remedy: Remedy): string {
-  return t(`turn.${remedy.quantity}`, { antenna: remedy.antenna, amount: amountOf(remedy), way: wayOf(remedy) });
+  return t(leans(remedy) ? 'turn.lean' : `turn.${remedy.quantity}`, { antenna: remedy.antenna, amount: amountOf(remedy), way: wayOf(remedy) });
 }

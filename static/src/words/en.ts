@@ -55,6 +55,7 @@ export const en = {
   'turn.amount': '{amount} {way}',
   'turn.skew': 'Turn {antenna} {amount} {way}',
   'turn.tilt': 'Tilt {antenna} {amount} {way}',
+  'turn.lean': 'Lean {antenna} {amount} {way}',
   'turn.azimuth': 'Swing {antenna} {amount} {way}',
   'turn.position': 'Move {antenna} {amount} {way}',
 

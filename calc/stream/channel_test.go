@@ -72,7 +72,7 @@ func TestSVD(t *testing.T) {
 				a[j*rows] = 2 * a[j*rows+1]
 			}
 		}
-		u, s, v := svd(a, rows, cols)
+		u, s, v := svd(a, rows, cols, leastColumn)
 		for j := range cols {
 			for i := range rows {
 				var x complex128
@@ -109,7 +109,7 @@ func TestSVD(t *testing.T) {
 	})
 	// Small singular values to their own accuracy: diag(1, 1e-10) turned by known angles.
 	c, sn := math.Cos(0.3), math.Sin(0.3)
-	_, s, _ := svd([]complex128{complex(c, 0), complex(sn, 0), complex(-sn*1e-10, 0), complex(c*1e-10, 0)}, 2, 2)
+	_, s, _ := svd([]complex128{complex(c, 0), complex(sn, 0), complex(-sn*1e-10, 0), complex(c*1e-10, 0)}, 2, 2, leastColumn)
 	if math.Abs(s[1]/1e-10-1) > 1e-12 {
 		t.Errorf("small value %v", s[1])
 	}
@@ -124,7 +124,7 @@ func TestRate(t *testing.T) {
 		for i := range c.h {
 			c.h[i] = complex(rapid.Float64Range(-1, 1).Draw(t, "re"), rapid.Float64Range(-1, 1).Draw(t, "im"))
 		}
-		_, s, _ := svd(c.h, nf, nn)
+		_, s, _ := svd(c.h, nf, nn, leastColumn)
 		var bits, streams float64
 		for _, x := range s {
 			bits += math.Log2(1 + rho*x*x)

@@ -18,7 +18,7 @@ type Detail struct {
 	NearCorrelation, FarCorrelation []complex128
 
 	// ConditionDB is the median over the scatter of 20 log₁₀ of the largest over the smallest singular value of H, at
-	// most 300.
+	// most 250.
 	ConditionDB float64
 }
 
@@ -46,9 +46,9 @@ func (e *Engine) Detail(near, far []antenna.Body) Detail {
 			}
 			h, rows, cols = t, cols, rows
 		}
-		_, s, _ := svd(h, rows, cols)
-		db := 300.0
-		if s[cols-1] > 1e-15*s[0] {
+		_, s, _ := svd(h, rows, cols, leastColumn)
+		db := 250.0
+		if s[cols-1] > leastColumn*s[0] {
 			db = 20 * math.Log10(s[0]/s[cols-1])
 		}
 		all = append(all, db)

@@ -67,6 +67,10 @@ const (
 	mostPoints          = 4096 // per replicate: 32,768 in all
 )
 
+// leastBeam is the share of the direct path below which its singular vectors are not followed: their directions carry the
+// rounding of phases, kD·2⁻⁵³ of a radian or 1e-9, over the share, and the answer must be the same on every machine.
+const leastBeam = 1e-5
+
 // Tolerances of each covariance against the power received. A covariance error of 1e-5 moves the rate of the weakest
 // eigenmode above the noise by about 1e-5·ρ, 0.003 bit/s/Hz at 25 dB; Local compares two like errors and keeps their
 // difference only.
@@ -287,7 +291,7 @@ func (e *Engine) load(near, far []antenna.Body, coarse bool) {
 	if !e.ranked && c.random {
 		// Beams of the plan's direct path: strong and weak streams apart. No rate depends on it.
 		if e.los > 0 {
-			e.u, _, e.v = svd(c.mean, c.far, c.near)
+			e.u, _, e.v = svd(c.mean, c.far, c.near, leastBeam)
 		}
 		e.ranked = true
 	}

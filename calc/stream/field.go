@@ -220,7 +220,7 @@ func (s *spectrum) take(nodes []scatter.Node, tolerance float64) {
 	least, sum := 0.0, 0.0
 	for _, p := range sorted {
 		if sum += p; sum > tolerance/3*total {
-			least = p
+			least = p * (1 - 1e-6) // nodes that are alike by symmetry stay together, whatever their last bit
 			break
 		}
 	}

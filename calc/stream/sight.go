@@ -43,7 +43,7 @@ func LineOfSight(near, far [][3]float64, distance, wavelength, snr float64) (Lim
 		}
 		h, rows, cols = t, cols, rows
 	}
-	_, l.Singular, _ = svd(h, rows, cols)
+	_, l.Singular, _ = svd(h, rows, cols, leastColumn)
 	l.ConditionDB = 20 * math.Log10(l.Singular[0]/l.Singular[cols-1])
 	return l, nil
 }
@@ -113,7 +113,7 @@ func (e *Engine) Streams(near, far []antenna.Body, ofNear bool, azimuths []float
 	}
 	// The weights maximise w^T-sent power: h_i = Σ_j at(j,i) w_j, E|h|² = wᵀ t w* summed, so w is the conjugate of an
 	// eigenvector of t (Hermitian, row by row = its transpose by columns).
-	_, gains, v := svd(t, n, n)
+	_, gains, v := svd(t, n, n, leastColumn)
 	total := 0.0
 	for _, g := range gains {
 		total += g

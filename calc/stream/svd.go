@@ -2,14 +2,21 @@ package stream
 
 import "math"
 
+// leastColumn is 250 dB below the whole: rounding of double precision is at 320.
+const leastColumn = 3e-13
+
 // svd is the singular value decomposition A = U Σ Vᴴ of a rows × cols matrix stored by columns (entry (i,j) at
 // j·rows+i): one-sided Jacobi rotations on the columns (Hestenes; Demmel and Veselić, SIAM J. Matrix Anal. 13 (1992)),
 // which finds small singular values to their own relative accuracy. Columns that are already orthogonal are left alone,
 // so that block structure is kept.
 //
+// Columns that have shrunk below the share least of the whole are left as they are: what they hold is rounding, or small
+// enough that its direction would be; least is at least leastColumn. Columns orthogonal to a thousandth of that are not
+// turned either.
+//
 // s holds cols values in falling order. u is rows × rows and v cols × cols, by columns, both unitary; columns of u beyond
 // the rank complete it.
-func svd(a []complex128, rows, cols int) (u []complex128, s []float64, v []complex128) {
+func svd(a []complex128, rows, cols int, least float64) (u []complex128, s []float64, v []complex128) {
 	w := append([]complex128(nil), a...)
 	v = make([]complex128, cols*cols)
 	for j := range cols {
@@ -27,6 +34,8 @@ func svd(a []complex128, rows, cols int) (u []complex128, s []float64, v []compl
 		}
 		total += abs2(w[i])
 	}
+	// Columns of one length that are orthogonal but for rounding would be turned by an angle of chance.
+	orthogonal := math.Max(1e-15, 1e-3*least)
 	for range 60 {
 		rotated := false
 		for p := range cols {
@@ -40,9 +49,7 @@ func svd(a []complex128, rows, cols int) (u []complex128, s []float64, v []compl
 					xy += conj(x[i]) * y[i]
 				}
 				g := math.Hypot(real(xy), imag(xy))
-				// What is left of a column below 1e-17 of the matrix is rounding: turning it on would end in underflow, where a
-				// phase is none.
-				if g <= 1e-15*math.Sqrt(xx*yy) || min(xx, yy) <= 1e-34*total {
+				if g <= orthogonal*math.Sqrt(xx*yy) || min(xx, yy) <= least*least*total {
 					continue
 				}
 				rotated = true
@@ -84,7 +91,7 @@ func svd(a []complex128, rows, cols int) (u []complex128, s []float64, v []compl
 	}
 	u = make([]complex128, rows*rows)
 	n := 0
-	for ; n < min(rows, cols) && s[n] > 1e-14*s[0] && s[n] > 0; n++ {
+	for ; n < min(rows, cols) && s[n] > least*math.Sqrt(total); n++ {
 		for i := range rows {
 			u[n*rows+i] = w[n*rows+i] / complex(s[n], 0)
 		}

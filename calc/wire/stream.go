@@ -109,7 +109,7 @@ func streamLimit(v *codec.Value) (answer, *Problem) {
 		return nil, &Problem{Code: codec.Impossible, Field: "distance_m", Message: err.Error()}
 	}
 	condition, spacing, product := codec.Nothing(), codec.Nothing(), codec.Nothing()
-	if l.ConditionDB < 300 { // the smallest singular value is above rounding
+	if l.ConditionDB < 250 { // the smallest singular value is above rounding
 		condition = codec.Num(l.ConditionDB)
 	}
 	if n := max(len(near), len(far)); n > 1 {

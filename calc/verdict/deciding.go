@@ -83,8 +83,10 @@ func (j *judge) deciding(b *belief) *Deciding {
 				hi = mid
 			}
 		}
-		need := best.q.border(u * lo)
-		d.UNeeded = &need
+		if lo > 0 { // else all but an exact reading is too doubtful
+			need := best.q.border(u * lo)
+			d.UNeeded = &need
+		}
 	}
 	return d
 }

@@ -149,6 +149,16 @@ func TestTheSurroundingsDecide(t *testing.T) {
 	if v.Reason.Code != verdict.SurroundingsDecide || v.Word != verdict.Go {
 		t.Errorf("%s, %s: %s", v.Word, v.Reason.Code, v.Reason.Text)
 	}
+	// Where the median case is itself in doubt, what a reading would do is said of that
+	// case alone.
+	for i := range s.Limits {
+		if s.Limits[i].Name == sheet.EffectiveStreams {
+			s.Limits[i].Value = *outcome(t, v, sheet.EffectiveStreams).Value
+		}
+	}
+	if w := judged(t, s); w.Word != verdict.MeasureAgain || w.Reason.Code != verdict.SurroundingsDecide || !strings.Contains(w.Reason.Text, " spreads. In the median case: ") {
+		t.Errorf("%s, %s: %s", w.Word, w.Reason.Code, w.Reason.Text)
+	}
 	for i := range s.Limits {
 		if s.Limits[i].Name == sheet.EffectiveStreams {
 			s.Limits[i].Value = 1.2

@@ -136,8 +136,12 @@ func Judge(s *sheet.Sheet) (*Verdict, *codec.Problem) {
 	v.Reason = j.reason(v, b, o)
 	if v.Reason.Code != MissingReading && len(v.NotJudged) == 0 {
 		if other, which := j.otherCase(b, wordOf(o.joint)); other != "" {
+			median := v.Reason.Text
+			if v.Reason.Code == Doubt {
+				median = "In the median case: " + median
+			}
 			v.Reason.Code = SurroundingsDecide
-			v.Reason.Text = "The surroundings decide, not a reading: " + v.Word + " in their median case, " + other + " with " + which + " spreads. " + v.Reason.Text
+			v.Reason.Text = "The surroundings decide, not a reading: " + v.Word + " in their median case, " + other + " with " + which + " spreads. " + median
 		}
 	}
 	return v, nil

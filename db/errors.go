@@ -13,6 +13,7 @@ var (
 	ErrNameTaken  = errors.New("somebody of that name is there already")
 	ErrInvitation = errors.New("this invitation does not exist, was used, or is older than it may be")
 	ErrNoSession  = errors.New("no such session, or it has ended")
+	ErrOtherText  = errors.New("was applied with other text than this program has")
 	ErrNewer      = errors.New("the database was written by a newer crossplumb")
 )
 

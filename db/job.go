@@ -142,14 +142,16 @@ type LogEntry struct {
 	ReceivedAt time.Time
 	SentAt     *time.Time // the device's clock when it sent, where it said so
 	AuthorName string
-	Raw        string
+	// UploaderName is who was signed in where it came from: an entry may be carried for its author.
+	UploaderName string
+	Raw          string
 }
 
 // JobLog is the log of one job up to upTo, in order of seq.
 func (s *Store) JobLog(ctx context.Context, job string, upTo int64) ([]LogEntry, error) {
 	return s.logRows(ctx, `
-		SELECT e.seq, e.received_ms, e.sent_ms, coalesce(p.name, ''), e.raw
-		FROM entries e LEFT JOIN people p ON p.id = e.author WHERE e.job = ? AND e.seq <= ? ORDER BY e.seq`, job, upTo)
+		SELECT e.seq, e.received_ms, e.sent_ms, coalesce(p.name, ''), coalesce(u.name, ''), e.raw
+		FROM entries e LEFT JOIN people p ON p.id = e.author LEFT JOIN people u ON u.id = e.uploader WHERE e.job = ? AND e.seq <= ? ORDER BY e.seq`, job, upTo)
 }
 
 // Plan is the job's plan and the text it stands in.
@@ -184,13 +186,14 @@ func (s *Store) EntriesAfter(ctx context.Context, by Person, after int64, limit 
 	}
 	if by.Role == Supervisor {
 		list, err = s.logRows(ctx, `
-			SELECT e.seq, e.received_ms, e.sent_ms, coalesce(p.name, ''), e.raw
-			FROM entries e LEFT JOIN people p ON p.id = e.author
+			SELECT e.seq, e.received_ms, e.sent_ms, coalesce(p.name, ''), coalesce(u.name, ''), e.raw
+			FROM entries e LEFT JOIN people p ON p.id = e.author LEFT JOIN people u ON u.id = e.uploader
 			WHERE e.seq > ? AND e.seq <= ? ORDER BY e.seq LIMIT ?`, after, end.Seq, limit)
 	} else {
 		list, err = s.logRows(ctx, `
-			SELECT e.seq, e.received_ms, e.sent_ms, coalesce(p.name, ''), e.raw
-			FROM entries e JOIN jobs j ON j.id = e.job LEFT JOIN people p ON p.id = e.author
+			SELECT e.seq, e.received_ms, e.sent_ms, coalesce(p.name, ''), coalesce(u.name, ''), e.raw
+			FROM entries e JOIN jobs j ON j.id = e.job
+			LEFT JOIN people p ON p.id = e.author LEFT JOIN people u ON u.id = e.uploader
 			WHERE e.seq > ? AND e.seq <= ? AND j.crew = ? AND j.stage <> 'drafted' ORDER BY e.seq LIMIT ?`,
 			after, end.Seq, by.Crew, limit)
 	}
@@ -219,7 +222,7 @@ func (s *Store) logRows(ctx context.Context, query string, args ...any) ([]LogEn
 		var e LogEntry
 		var received int64
 		var sent sql.NullInt64
-		if err := rows.Scan(&e.Seq, &received, &sent, &e.AuthorName, &e.Raw); err != nil {
+		if err := rows.Scan(&e.Seq, &received, &sent, &e.AuthorName, &e.UploaderName, &e.Raw); err != nil {
 			return nil, err
 		}
 		e.ReceivedAt = timeOf(received)

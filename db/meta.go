@@ -124,19 +124,26 @@ func (s *Store) Device(ctx context.Context, device string) (Device, error) {
 	return d, err
 }
 
+// What a database is besides a real one: a demo that is being furnished, or one that is.
+const (
+	DemoBegun = "begun"
+	DemoWhole = "whole"
+)
+
 // MarkDemo says for good that what is in here was invented.
-func (s *Store) MarkDemo(ctx context.Context) error {
+func (s *Store) MarkDemo(ctx context.Context, state string) error {
 	return s.inTx(ctx, func(tx *sql.Tx) error {
-		_, err := tx.ExecContext(ctx, "INSERT INTO meta (key, value) VALUES ('demo', 'yes') ON CONFLICT (key) DO NOTHING")
+		_, err := tx.ExecContext(ctx,
+			"INSERT INTO meta (key, value) VALUES ('demo', ?) ON CONFLICT (key) DO UPDATE SET value = excluded.value", state)
 		return err
 	})
 }
 
-// IsDemo tells whether MarkDemo was ever called.
-func (s *Store) IsDemo(ctx context.Context) (bool, error) {
-	_, err := metaValue(ctx, s.read, "demo")
+// Demo is what MarkDemo said last, "" for a real database.
+func (s *Store) Demo(ctx context.Context) (string, error) {
+	state, err := metaValue(ctx, s.read, "demo")
 	if err == sql.ErrNoRows {
-		return false, nil
+		return "", nil
 	}
-	return err == nil, err
+	return state, err
 }

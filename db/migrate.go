@@ -85,7 +85,7 @@ func (m migration) apply(ctx context.Context, pool *sql.DB, nowMs int64) error {
 	case err == nil && applied == m.sum:
 		return nil
 	case err == nil:
-		return fmt.Errorf("was applied with other text than this program has")
+		return ErrOtherText
 	case err != sql.ErrNoRows:
 		return err
 	}

@@ -20,9 +20,11 @@ var demoCost = server.HashCost{MemoryKiB: 19 << 10, Passes: 2, Lanes: 1}
 
 func runDemo(ctx context.Context, args []string, io streams) error {
 	var listen, data string
+	var fresh bool
 	f := flags("demo", io)
 	f.StringVar(&listen, "listen", "127.0.0.1:8480", "address on this machine to listen on")
-	f.StringVar(&data, "data", "", "folder to keep the demo in; without it a new one that goes when the demo ends")
+	f.StringVar(&data, "data", "", "folder to keep the demo in; without it one in your cache folder")
+	f.BoolVar(&fresh, "fresh", false, "forget what was done in the demo and furnish it anew")
 	if err := parse(f, args); err != nil {
 		return err
 	}
@@ -33,21 +35,26 @@ func runDemo(ctx context.Context, args []string, io streams) error {
 	if !loopback(host) {
 		return usageError{errors.New("the demo listens on this machine only: its passphrases are printed for everybody")}
 	}
-	if data == "" {
-		if data, err = os.MkdirTemp("", "crossplumb-demo-"); err != nil {
-			return err
-		}
-		defer os.RemoveAll(data)
-	} else if err := os.MkdirAll(data, 0o700); err != nil {
-		return err
-	}
-	unlock, err := lockFolder(data)
+	folder, err := demoFolder(data)
 	if err != nil {
 		return err
 	}
-	defer unlock()
-	path := filepath.Join(data, databaseName)
-	if err := furnish(ctx, path, time.Now()); err != nil {
+	defer folder.leave()
+	path := filepath.Join(folder.path, databaseName)
+	if fresh {
+		if err := removeDemo(ctx, path); err != nil {
+			return err
+		}
+	}
+	err = furnish(ctx, path, time.Now())
+	if errors.Is(err, errHalfFurnished) || folder.own && (errors.Is(err, db.ErrOtherText) || errors.Is(err, db.ErrNewer)) {
+		// A start that was killed, or the demo of another build in the folder that is the demo's alone.
+		if err := removeDatabase(path); err != nil {
+			return err
+		}
+		err = furnish(ctx, path, time.Now())
+	}
+	if err != nil {
 		return err
 	}
 	store, err := db.Open(ctx, db.Config{Path: path, App: "crossplumb " + version})
@@ -56,8 +63,55 @@ func runDemo(ctx context.Context, args []string, io streams) error {
 	}
 	defer store.Close()
 	h := hosting{store: store, listen: listen, demo: true, cost: demoCost}
-	return h.run(ctx, io, func(origin string) error { return welcome(io.out, origin) })
+	return h.run(ctx, io, func(origin string) error { return welcome(io.out, origin, folder) })
 }
+
+// demoPlace is where a demo is kept.
+type demoPlace struct {
+	path   string
+	own    bool // made by the demo for the demo, not named by anybody
+	passes bool // goes when the demo ends
+	leave  func()
+}
+
+// demoFolder takes the named folder; or the one that demos are kept in, so that a demo that is stopped and started again
+// is the same and phones can go on; or, where another demo runs in that, a new one that goes when this one ends.
+func demoFolder(named string) (demoPlace, error) {
+	if named != "" {
+		return lockedDemo(demoPlace{path: named})
+	}
+	if cache, err := os.UserCacheDir(); err == nil {
+		if place, err := lockedDemo(demoPlace{path: filepath.Join(cache, "crossplumb-demo"), own: true}); err == nil {
+			return place, nil
+		}
+	}
+	path, err := os.MkdirTemp("", "crossplumb-demo-")
+	if err != nil {
+		return demoPlace{}, err
+	}
+	return lockedDemo(demoPlace{path: path, own: true, passes: true})
+}
+
+func lockedDemo(place demoPlace) (demoPlace, error) {
+	if err := os.MkdirAll(place.path, 0o700); err != nil {
+		return place, err
+	}
+	unlock, err := lockFolder(place.path)
+	if err != nil {
+		return place, err
+	}
+	place.leave = unlock
+	if place.passes {
+		place.leave = func() {
+			unlock()
+			os.RemoveAll(place.path)
+		}
+	}
+	return place, nil
+}
+
+// errHalfFurnished is a demo whose first start was killed.
+var errHalfFurnished = errors.New("the demo was not furnished to the end; start it with --fresh")
 
 // furnish fills an empty database with the invented company, leaves one that is furnished as it is, and refuses one
 // that holds anything else.
@@ -68,25 +122,63 @@ func furnish(ctx context.Context, path string, today time.Time) error {
 		return err
 	}
 	defer store.Close()
-	furnished, err := store.IsDemo(ctx)
-	if err != nil || furnished {
+	state, err := store.Demo(ctx)
+	switch {
+	case err != nil || state == db.DemoWhole:
 		return err
+	case state == db.DemoBegun:
+		return errHalfFurnished
 	}
 	somebody, err := store.Anybody(ctx)
 	if err != nil {
 		return err
 	}
 	if somebody {
-		return fmt.Errorf("%s holds people and jobs that are not the demo's; take another folder", filepath.Dir(path))
+		return notADemo(path)
 	}
-	// Marked first: a start that was killed half way leaves a folder that says what it is, and is not taken for real.
-	if err := store.MarkDemo(ctx); err != nil {
+	// Marked first: a folder with passphrases that everybody knows says what it is, however its start ended.
+	if err := store.MarkDemo(ctx, db.DemoBegun); err != nil {
 		return err
 	}
-	return simulate(ctx, store, clock, demoSeed, demoCost, today)
+	if err := simulate(ctx, store, clock, demoSeed, demoCost, today); err != nil {
+		return err
+	}
+	return store.MarkDemo(ctx, db.DemoWhole)
 }
 
-func welcome(to io.Writer, origin string) error {
+func notADemo(path string) error {
+	return fmt.Errorf("%s holds people and jobs that are not the demo's; take another folder", filepath.Dir(path))
+}
+
+// removeDemo takes a demo away, and nothing that is none.
+func removeDemo(ctx context.Context, path string) error {
+	if _, err := os.Stat(path); errors.Is(err, os.ErrNotExist) {
+		return nil
+	}
+	store, err := db.Open(ctx, db.Config{Path: path, App: "crossplumb " + version})
+	if err != nil {
+		return err
+	}
+	state, err := store.Demo(ctx)
+	if err := errors.Join(err, store.Close()); err != nil {
+		return err
+	}
+	if state == "" {
+		return notADemo(path)
+	}
+	return removeDatabase(path)
+}
+
+func removeDatabase(path string) error {
+	for _, suffix := range []string{"", "-wal", "-shm"} {
+		if err := os.Remove(path + suffix); err != nil && !errors.Is(err, os.ErrNotExist) {
+			return err
+		}
+	}
+	return nil
+}
+
+func welcome(to io.Writer, origin string, kept demoPlace) error {
 	fmt.Fprintf(to, `
 This is a demo. %s on the island of %s, their people, masts and readings are all
 invented; the readings were made by a simulator that knows what is wrong with which mount. It listens on this
@@ -104,14 +196,21 @@ Sign in as
 		}
 		fmt.Fprintf(to, "  %-14s %-30q %s\n", p.name, p.passphrase, what)
 	}
-	_, err := fmt.Fprint(to, `
+	where := fmt.Sprintf("The demo is kept in %s and goes on where it was; --fresh furnishes it anew.", kept.path)
+	again := "stop this program, go on entering, reload the page, start it again: everything goes up by itself;"
+	if kept.passes {
+		where = "Another demo runs on this machine, so this one goes when it ends; --data DIR keeps it."
+		again = "with --data DIR: " + again
+	}
+	_, err := fmt.Fprintf(to, `
 Try
   on the phone as Tam Verrill: open Gannet Head, read the cautions, enter a skew of 6,2 and see what the strip says;
-  stop this program, go on entering, reload the page, start it again with the same --data: everything goes up by itself;
+  %s
   at the desk as Ilse Marrow: the jobs handed in. Which one is fit to sign, which is not, and why?
 
+%s
 It computes mounts. It never says that a climb, a structure or an RF field is safe.
 
-`)
+`, again, where)
 	return err
 }

@@ -349,6 +349,79 @@ func TestTheDemoSaysWhatItIs(t *testing.T) {
 	}
 }
 
+// Without a folder the demo is kept where it finds itself again, a second one beside it passes, and what cannot be used
+// any more is furnished anew.
+func TestTheDemoFindsItselfAgain(t *testing.T) {
+	cache := t.TempDir()
+	t.Setenv("XDG_CACHE_HOME", cache)
+	instance := func(c *child) (name string, passes bool) {
+		t.Helper()
+		b := newBrowser(c.url)
+		if status, text, err := b.ask("POST", "/api/session", `{"name":"Ilse Marrow","passphrase":"seven gulls on a ridge"}`); err != nil || status != 200 {
+			t.Fatalf("%d %s (%v)", status, text, err)
+		}
+		_, text, err := b.ask("GET", "/api/state", "")
+		var state struct{ Instance string }
+		if err != nil || json.Unmarshal([]byte(text), &state, json.MatchCaseInsensitiveNames(true)) != nil {
+			t.Fatalf("%s (%v)", text, err)
+		}
+		return state.Instance, strings.Contains(c.said(), "goes when it ends")
+	}
+	begin := func(args ...string) *child {
+		return start(t, append([]string{"demo", "--listen", "127.0.0.1:0"}, args...)...)
+	}
+	first := begin()
+	name, passes := instance(first)
+	if passes || !strings.Contains(first.said(), cache) {
+		t.Errorf("the first demo is not kept in %s: %s", cache, first.said())
+	}
+	beside := begin()
+	other, passes := instance(beside)
+	if other == name || !passes {
+		t.Errorf("the second is %s, passes %v", other, passes)
+	}
+	beside.end(syscall.SIGTERM)
+	first.end(syscall.SIGKILL)
+	again := begin()
+	if got, _ := instance(again); got != name {
+		t.Errorf("after a kill it is %s, was %s", got, name)
+	}
+	again.end(syscall.SIGTERM)
+	fresh := begin("--fresh")
+	second, _ := instance(fresh)
+	if second == name {
+		t.Error("--fresh left it as it was")
+	}
+	fresh.end(syscall.SIGTERM)
+
+	path := filepath.Join(cache, "crossplumb-demo", databaseName)
+	change := func(do func(*db.Store)) {
+		t.Helper()
+		store, err := db.Open(t.Context(), db.Config{Path: path})
+		if err != nil {
+			t.Fatal(err)
+		}
+		do(store)
+		store.Close()
+	}
+	change(func(s *db.Store) { s.MarkDemo(t.Context(), db.DemoBegun) }) // as a start that was killed leaves it
+	third := begin()
+	name, _ = instance(third)
+	if name == second {
+		t.Error("a demo that was half furnished was taken")
+	}
+	third.end(syscall.SIGTERM)
+	real := filepath.Join(t.TempDir(), "real")
+	s := start(t, "serve", "--data", real, "--listen", "127.0.0.1:0")
+	s.end(syscall.SIGTERM)
+	if got := crossplumb(t, "", "demo", "--data", real, "--fresh", "--listen", "127.0.0.1:0"); got.code != 1 || !strings.Contains(got.err, "not the demo's") {
+		t.Errorf("--fresh on a real database: %+v", got)
+	}
+	if _, err := os.Stat(filepath.Join(real, databaseName)); err != nil {
+		t.Errorf("the real database: %v", err)
+	}
+}
+
 // sentEntries writes what a phone sends.
 func sentEntries(d *testDevice, n int) (body string, hashes []string) {
 	type sent struct {

@@ -106,11 +106,11 @@ func runServe(ctx context.Context, args []string, io streams) error {
 		return err
 	}
 	defer store.Close()
-	demo, err := store.IsDemo(ctx)
+	demo, err := store.Demo(ctx)
 	if err != nil {
 		return err
 	}
-	if demo {
+	if demo != "" {
 		return fmt.Errorf("%s holds the demo, with passphrases that everybody knows; take another folder", cfg.data)
 	}
 	h := hosting{store: store, listen: cfg.listen, https: cfg.https(), proxies: cfg.proxies, origin: cfg.origin, verbose: cfg.verbose}

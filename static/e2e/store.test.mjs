@@ -120,6 +120,18 @@ test('a batch is the oldest entries that fit, and at least one', async () => {
   await store.closeDatabase();
 });
 
+test('an entry that waits and is not in the outbox is put there at the next start', async () => {
+  const store = await storeWindow();
+  await store.keepSession(SESSION);
+  for (let i = 0; i < 3; i++) await store.addEntry('note.added', JOB, null, { text: `note ${i}` });
+  assert.equal(await store.mendOutbox(), 0);
+  await store.write(['outbox'], (tx) => tx.objectStore('outbox').delete(2));
+  assert.equal(await store.outgoing(), 2);
+  assert.equal(await store.mendOutbox(), 1);
+  assert.deepEqual((await store.nextBatch(50, 1e6)).map((one) => one.device_seq), [1, 2, 3]);
+  await store.closeDatabase();
+});
+
 test('a newer page that upgrades the store is not held up, and this page says that it is outdated', async () => {
   const store = await storeWindow();
   await store.keepSession(SESSION);

@@ -10,6 +10,28 @@ export interface Outgoing {
   hash: string;
 }
 
+/** How many entries a request could take now. */
+export function outgoing(): Promise<number> {
+  return withDatabase((db) => db.count('outbox'));
+}
+
+/**
+ * At each start: every own entry that waits must be in the outbox. They are written together, so one outside of it means
+ * that something is broken (a restored profile, a fault of ours); it goes up all the same. Returns how many there were.
+ */
+export function mendOutbox(): Promise<number> {
+  return write(['outbox', 'entries'], async (tx) => {
+    const out = new Set((await tx.objectStore('outbox').getAll()).map((one) => one.id));
+    let mended = 0;
+    for (const row of await tx.objectStore('entries').index('by whereabouts').getAll([1, 'waiting'])) {
+      if (out.has(row.id)) continue;
+      await tx.objectStore('outbox').put({ device_seq: row.device_seq, id: row.id });
+      mended++;
+    }
+    return mended;
+  });
+}
+
 /** The oldest waiting entries, as many as fit into one request. */
 export function nextBatch(most: number, mostBytes: number): Promise<Outgoing[]> {
   return withDatabase(async (db) => {

@@ -2,6 +2,7 @@
 // a timer, and by a button. One window at a time.
 import { counts } from '../store/entries.ts';
 import { onChange } from '../store/database.ts';
+import { mendOutbox, outgoing } from '../store/outbox.ts';
 import { askForProtection } from '../store/protection.ts';
 import { localTime } from '../store/time.ts';
 import { waitAfter } from './backoff.ts';
@@ -37,6 +38,8 @@ export async function start(): Promise<void> {
   });
   session.watch(() => now());
   await readSession();
+  const mended = await mendOutbox();
+  if (mended > 0) console.warn(`${mended} waiting entries were not in the outbox`);
   await countWaiting();
   now();
 }
@@ -123,9 +126,10 @@ async function round(): Promise<void> {
   }
 }
 
+/** Tells how many wait; true: a request could take some now. */
 async function countWaiting(): Promise<boolean> {
   const { waiting } = await counts();
   // "up to date" with something waiting would be untrue, also for the moment before it goes up.
   note(waiting > 0 && status.value.state === 'up to date' ? { waiting, state: 'sending' } : { waiting });
-  return waiting > 0;
+  return (await outgoing()) > 0;
 }

@@ -163,17 +163,19 @@ func checkSheets(plan db.Plan) *wire.Problem {
 }
 
 type entryBody struct {
-	Seq        int64   `json:"seq"`
-	ReceivedAt string  `json:"received_at"`
-	SentAt     *string `json:"sent_at"`
-	AuthorName string  `json:"author_name"`
-	Raw        string  `json:"raw"`
+	Seq          int64   `json:"seq"`
+	ReceivedAt   string  `json:"received_at"`
+	SentAt       *string `json:"sent_at"`
+	AuthorName   string  `json:"author_name"`
+	UploaderName string  `json:"uploader_name"`
+	Raw          string  `json:"raw"`
 }
 
 func entriesOf(list []db.LogEntry) []entryBody {
 	out := make([]entryBody, 0, len(list))
 	for _, e := range list {
-		line := entryBody{Seq: e.Seq, ReceivedAt: stamp(e.ReceivedAt), AuthorName: e.AuthorName, Raw: e.Raw}
+		line := entryBody{Seq: e.Seq, ReceivedAt: stamp(e.ReceivedAt), AuthorName: e.AuthorName, UploaderName: e.UploaderName,
+			Raw: e.Raw}
 		if e.SentAt != nil {
 			at := stamp(*e.SentAt)
 			line.SentAt = &at

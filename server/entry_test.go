@@ -107,12 +107,24 @@ func TestABatchIsAnsweredEntryByEntry(t *testing.T) {
 	if len(page.Entries) != 2 || page.Entries[0].Raw != note.Raw || page.Entries[1].Raw != skew.Raw || page.Entries[0].AuthorName != "Tam" {
 		t.Errorf("pulled %+v", page.Entries)
 	}
+	if page.Entries[0].UploaderName != "Tam" {
+		t.Errorf("uploaded by %q", page.Entries[0].UploaderName)
+	}
+	// Whoever is signed in may carry what Tam wrote, but the log says so.
+	s.do(call{method: "POST", path: "/api/entries", cookie: s.cookie(s.desk), status: 200, has: []string{`"stored"`},
+		body: upload(newDevice(s.tam).write(s.job, "", db.NoteAdded, `{"text":"carried"}`))})
+	for _, path := range []string{"/api/entries?after=4", "/api/jobs/" + s.job} {
+		s.do(call{method: "GET", path: path, cookie: tam, status: 200}).into(t, &page)
+		if last := page.Entries[len(page.Entries)-1]; last.AuthorName != "Tam" || last.UploaderName != s.desk.Name {
+			t.Errorf("%s: carried by %q for %q", path, last.UploaderName, last.AuthorName)
+		}
+	}
 	var state struct {
 		Devices map[string]deviceBody
 		Head    headBody
 	}
 	s.do(call{method: "GET", path: "/api/state", cookie: tam, status: 200}).into(t, &state)
-	if got := state.Devices[d.id]; got.MaxContiguousSeq != 2 || got.Hash != skew.Hash || state.Head != first.Head {
+	if got := state.Devices[d.id]; got.MaxContiguousSeq != 2 || got.Hash != skew.Hash || state.Head.Seq != first.Head.Seq+1 {
 		t.Errorf("state %+v", state)
 	}
 	s.do(call{method: "GET", path: "/api/state", cookie: s.cookie(s.odd), status: 200, hasNot: []string{d.id}})

@@ -15,10 +15,10 @@ const desk = await openWindow('desk/record', 'desk/sheets', 'desk/format', 'desk
 // ---- The log as a record -----------------------------------------------------------------------------------------
 
 let lastSeq = 0;
-function stored(kind, body, { mount = 'm1', device = 'phone-1', id = `e${lastSeq + 1}`, by = 'Una' } = {}) {
+function stored(kind, body, { mount = 'm1', device = 'phone-1', id = `e${lastSeq + 1}`, by = 'Una', from = by, number } = {}) {
   const seq = ++lastSeq;
-  const raw = JSON.stringify({ id, device, device_seq: seq, kind, mount, body, at: `2026-11-30T09:${String(seq).padStart(2, '0')}:00+01:00` });
-  return { seq, received_at: '2026-11-30T12:00:00Z', author_name: by, raw };
+  const raw = JSON.stringify({ id, device, device_seq: number ?? seq, kind, mount, body, at: `2026-11-30T09:${String(seq).padStart(2, '0')}:00+01:00` });
+  return { seq, received_at: '2026-11-30T12:00:00Z', author_name: by, uploader_name: from, raw };
 }
 const taken = (phase, quantity, value, more) =>
   stored('reading.taken', { phase, antenna: 'B', quantity, typed: String(value), reading: { value, unit: 'deg', u: 0.3, method: 'level' } }, more);
@@ -41,6 +41,23 @@ test('a bolt moved makes earlier as-left readings of its part stale, and no othe
     taken('as_left', 'skew', 0.2),
   );
   assert.deepEqual(readings.map((r) => r.standing.is), ['used', 'moved since', 'used', 'used', 'used']);
+});
+
+test('who carried an entry for its author is named beside it', () => {
+  const record = recordOf(taken('as_found', 'skew', 6, { by: 'Una', from: 'Bo' }), taken('as_found', 'tilt', 1));
+  assert.deepEqual(record.readings.map((r) => r.by), ['Una (sent by Bo)', 'Una']);
+  assert.deepEqual(record.lines.map((l) => l.by), ['Una (sent by Bo)', 'Una']);
+});
+
+test('an entry that arrived late is read at the place that its device gave it', () => {
+  // The turn of the bolt came after the reading that followed it: that reading stands.
+  const record = recordOf(
+    taken('as_left', 'skew', 2, { number: 1 }),
+    taken('as_left', 'skew', 0.2, { number: 3 }),
+    stored('bolt.moved', { antenna: 'B', quantity: 'skew' }, { number: 2 }),
+  );
+  assert.deepEqual(record.readings.map((r) => [r.reading.value, r.standing.is]), [[2, 'moved since'], [0.2, 'used']]);
+  assert.deepEqual(record.lines.map((l) => l.entry.device_seq), [1, 3, 2], 'the log itself stands as it came in');
 });
 
 test('phones are counted without the desk, and text that cannot be read is kept as it came', () => {

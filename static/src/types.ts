@@ -439,6 +439,8 @@ export interface ServerEntry {
   seq: number;
   received_at: string;
   author_name: string;
+  /** Who was signed in on the device that sent it. */
+  uploader_name: string;
   raw: string;
 }
 

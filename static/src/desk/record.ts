@@ -2,6 +2,7 @@
 // Nothing is computed here; which readings still count follows from the order of the log, as mount.fold has it.
 
 import type { Bodies, Entry, JobPage, Kind, Phase, Quantity, Reading, ServerEntry } from '../types';
+import { t } from './words.ts';
 
 export type Standing =
   | { is: 'used' }
@@ -73,6 +74,19 @@ function read(entry: ServerEntry): Entry | null {
   }
 }
 
+/** The author stands first; whoever else was signed in where the entry came from is never left out. */
+function byOf({ author_name: author, uploader_name: uploader }: ServerEntry): string {
+  return uploader && uploader !== author ? t('desk.carried', { author, uploader }) : author;
+}
+
+/** By arrival, but each device's entries by their own numbers: so the server reads them when it judges. */
+function inDeviceOrder(lines: readonly LogLine[]): LogLine[] {
+  const devices = new Map<string, LogLine[]>();
+  for (const line of lines) if (line.entry) devices.set(line.entry.device, [...(devices.get(line.entry.device) ?? []), line]);
+  for (const own of devices.values()) own.sort((a, b) => (b.entry?.device_seq ?? 0) - (a.entry?.device_seq ?? 0));
+  return lines.map((line) => (line.entry && devices.get(line.entry.device)?.pop()) || line);
+}
+
 const deskKinds: ReadonlySet<string> = new Set(['job.planned', 'job.issued', 'job.sent_back', 'job.signed_off']);
 
 export function recordOf(page: JobPage): JobRecord {
@@ -88,12 +102,12 @@ export function recordOf(page: JobPage): JobRecord {
     phones: [],
   };
   for (const stored of page.entries) {
-    const entry = read(stored);
-    const by = stored.author_name;
-    record.lines.push({ seq: stored.seq, receivedAt: stored.received_at, by, raw: stored.raw, entry });
+    record.lines.push({ seq: stored.seq, receivedAt: stored.received_at, by: byOf(stored), raw: stored.raw, entry: read(stored) });
+  }
+  for (const { seq, by, entry } of inDeviceOrder(record.lines)) {
     if (entry === null) continue;
     if (!deskKinds.has(entry.kind) && !record.phones.includes(entry.device)) record.phones.push(entry.device);
-    const line = { id: entry.id, seq: stored.seq, mount: entry.mount, by, at: entry.at };
+    const line = { id: entry.id, seq, mount: entry.mount, by, at: entry.at };
     switch (entry.kind) {
       case 'reading.taken':
         record.readings.push({

@@ -166,6 +166,7 @@ export const deskEn = {
 
   // ---- The visit ----
   'desk.by': '{name}, {when}',
+  'desk.carried': '{author} (sent by {uploader})',
   'desk.cautions': 'Cautions confirmed',
   'desk.cautions.not': 'not confirmed',
   'desk.cautions.by': 'confirmed by {name}, {when}, wording {version}',

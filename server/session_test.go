@@ -3,6 +3,7 @@ package server
 import (
 	"fmt"
 	"net/http"
+	"os"
 	"strconv"
 	"strings"
 	"sync"
@@ -191,6 +192,23 @@ func TestPassphraseForms(t *testing.T) {
 }
 
 // A passphrase that was stored under a cheaper rule is stored anew at the next sign-in.
+// The pages say how short a passphrase may be before they ask; what they say must be what the server takes.
+func TestThePagesNameTheShortestPassphrase(t *testing.T) {
+	for file, line := range map[string]string{
+		"../static/src/phone/SignIn.tsx": "const shortestPassphrase = %d;",
+		"../static/src/desk/SignIn.tsx":  "const shortest = %d;",
+		"../static/src/words/en.ts":      "'enter.too-short': 'At least %d characters;",
+	} {
+		text, err := os.ReadFile(file)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if want := fmt.Sprintf(line, shortestPassphrase); !strings.Contains(string(text), want) {
+			t.Errorf("%s does not have %q", file, want)
+		}
+	}
+}
+
 func TestAWeakPassphraseIsStoredAnew(t *testing.T) {
 	s := openSite(t, func(c *Config) { c.Passphrases = HashCost{MemoryKiB: 128, Passes: 2, Lanes: 1} })
 	s.do(call{method: "POST", path: "/api/session", body: signInBody("Ilse", passphrase), status: 200})

@@ -182,6 +182,19 @@ test('a connection that is lost after the entry was written does not make it twi
   await store.closeDatabase();
 });
 
+test('on a phone that two people share, what the other one read is not yours, and bears the name', async () => {
+  const store = await storeWindow();
+  await store.keepSession(SESSION);
+  await store.addEntry('note.added', JOB, null, { text: 'of Una' });
+  await store.keepSession({ ...SESSION, user: { ...SESSION.user, id: 'u2', name: 'Ivo' } });
+  await store.addEntry('note.added', JOB, null, { text: 'of Ivo' });
+  const seen = (log) => log.map((one) => [one.entry.author, one.author_name, one.own]);
+  assert.deepEqual(seen(await store.entriesOf(JOB)), [['u1', 'Una', false], ['u2', 'Ivo', true]]);
+  await store.keepSession(SESSION);
+  assert.deepEqual(seen(await store.ownEntries()), [['u1', 'Una', true], ['u2', 'Ivo', false]]);
+  await store.closeDatabase();
+});
+
 test('an entry that went up late is read at the place that its device gave it', async () => {
   const store = await storeWindow();
   await store.keepSession(SESSION);

@@ -403,7 +403,7 @@ export interface LoggedEntry {
   entry: Entry;
   raw: string;
   hash: string;
-  /** Made on this device. */
+  /** Made on this device by the person who is signed in now. */
   own: boolean;
   whereabouts: Whereabouts;
   /** Server sequence; null until the server has it. */

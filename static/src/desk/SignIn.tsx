@@ -9,7 +9,7 @@ import * as api from './api';
 import { t } from './words';
 
 /** Shortest passphrase that the server takes; fifteen is the advice (OWASP ASVS 5.0.0, V6.2.1). */
-const shortest = 8;
+const shortest = 10;
 
 interface Props {
   invitation?: string;

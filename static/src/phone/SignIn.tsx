@@ -9,7 +9,7 @@ import { Page } from './Page.tsx';
 import { go } from './route.ts';
 
 /** Shortest passphrase that the server takes. */
-const shortestPassphrase = 8;
+const shortestPassphrase = 10;
 
 type Where = 'name' | 'passphrase' | 'form';
 

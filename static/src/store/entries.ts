@@ -1,8 +1,8 @@
 // The log on this phone. An entry is made once, as one JSON text; that text is kept, hashed and sent byte for byte.
 import { uuidv7 } from 'uuidv7';
-import type { Bodies, Counts, Entry, EntryOf, Kind, LoggedEntry } from '../types.ts';
+import type { Bodies, Counts, Entry, EntryOf, Kind, LoggedEntry, Session } from '../types.ts';
 import { changed, withDatabase, write } from './database.ts';
-import type { DeviceRow, EntryRow } from './database.ts';
+import type { Database, DeviceRow, EntryRow } from './database.ts';
 import { sha256 } from './hash.ts';
 import { getSetting } from './settings.ts';
 import { localTime } from './time.ts';
@@ -74,7 +74,7 @@ async function make<K extends Kind>(
     // Awaiting the hash would end an open transaction, so it is made before, and the transaction checks that the head
     // is still the one that it was made for.
     const hash = await sha256(raw);
-    if (await append(device, entry, raw, hash, options)) {
+    if (await append(device, entry, session.user.name, raw, hash, options)) {
       changed();
       return entry;
     }
@@ -86,6 +86,7 @@ async function make<K extends Kind>(
 function append(
   seen: DeviceRow,
   entry: { id: string; job: string | null },
+  author: string,
   raw: string,
   hash: string,
   options: AddOptions,
@@ -106,7 +107,7 @@ function append(
       whereabouts: 'waiting',
       seq: null,
       reason: null,
-      author_name: null,
+      author_name: author, // until the server says it: somebody else may look before
       received_at: null,
     });
     await tx.objectStore('outbox').add({ device_seq: device.next_seq, id: entry.id });
@@ -139,26 +140,38 @@ function release(): string {
  * been set apart, or the server was restored) would make a bolt move after the reading that followed it.
  */
 export async function entriesOf(job: string): Promise<LoggedEntry[]> {
-  const rows = await withDatabase((db) => db.getAllFromIndex('entries', 'by job', job));
-  return inDeviceOrder(rows.sort(inOrder)).map(logged);
+  const [rows, me] = await rowsAndMe((db) => db.getAllFromIndex('entries', 'by job', job));
+  return inDeviceOrder(rows.sort(inOrder)).map((row) => logged(row, me));
 }
 
 /** Every device keeps the places that its entries have in the list, and fills them by its own numbers. */
 function inDeviceOrder(rows: readonly EntryRow[]): EntryRow[] {
   const devices = new Map<string, EntryRow[]>();
-  for (const row of rows) devices.set(row.device, [...(devices.get(row.device) ?? []), row]);
+  for (const row of rows) {
+    const own = devices.get(row.device);
+    if (own) own.push(row);
+    else devices.set(row.device, [row]);
+  }
   for (const own of devices.values()) own.sort((a, b) => b.device_seq - a.device_seq);
   return rows.map((row) => devices.get(row.device)?.pop() ?? row);
 }
 
 /** Every entry that was made on this phone, in order: for the person's own look, and for export. */
 export async function ownEntries(): Promise<LoggedEntry[]> {
-  const rows = await withDatabase(async (db) => {
+  const [rows, me] = await rowsAndMe(async (db) => {
     const device = (await db.get('settings', 'device')) as DeviceRow | undefined;
     if (!device) return [];
     return db.getAllFromIndex('entries', 'by device', IDBKeyRange.bound([device.id, 0], [device.id, Infinity]));
   });
-  return rows.map(logged);
+  return rows.map((row) => logged(row, me));
+}
+
+/** Rows, and the id of who is signed in: on a phone that two people share, the other's readings are not "yours". */
+function rowsAndMe(find: (db: Database) => Promise<EntryRow[]>): Promise<[EntryRow[], string | undefined]> {
+  return withDatabase(async (db) => {
+    const session = (await db.get('settings', 'session')) as Session | undefined;
+    return [await find(db), session?.user.id];
+  });
 }
 
 function inOrder(a: EntryRow, b: EntryRow): number {
@@ -168,12 +181,13 @@ function inOrder(a: EntryRow, b: EntryRow): number {
   return a.device_seq - b.device_seq;
 }
 
-function logged(row: EntryRow): LoggedEntry {
+function logged(row: EntryRow, me: string | undefined): LoggedEntry {
+  const entry = JSON.parse(row.raw) as Entry;
   return {
-    entry: JSON.parse(row.raw) as Entry,
+    entry,
     raw: row.raw,
     hash: row.hash,
-    own: row.own === 1,
+    own: row.own === 1 && entry.author === me,
     whereabouts: row.whereabouts,
     seq: row.seq,
     reason: row.reason,
@@ -197,6 +211,6 @@ export function counts(): Promise<Counts> {
 
 /** Own entries that the server set apart, with its reasons. */
 export async function needingPerson(): Promise<LoggedEntry[]> {
-  const rows = await withDatabase((db) => db.getAllFromIndex('entries', 'by whereabouts', [1, 'needs person']));
-  return rows.map(logged);
+  const [rows, me] = await rowsAndMe((db) => db.getAllFromIndex('entries', 'by whereabouts', [1, 'needs person']));
+  return rows.map((row) => logged(row, me));
 }

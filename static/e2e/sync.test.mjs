@@ -367,6 +367,18 @@ test('signing out is refused while something waits, and keeps the own log afterw
   assert.equal((await phone.ownEntries()).length, 2);
 });
 
+test('a store that cannot be opened leaves nobody signed in, and says why', async (t) => {
+  await phone.closeDatabase();
+  const broken = await openWindow('store/database', 'sync/session');
+  t.mock.method(IDBFactory.prototype, 'open', () => {
+    throw new DOMException('the disk is broken', 'UnknownError');
+  });
+  await assert.rejects(broken.readSession());
+  assert.equal(broken.session.value, null);
+  assert.equal(broken.storeHealth.value.state, 'failed');
+  assert.match(broken.storeHealth.value.why, /the disk is broken/);
+});
+
 test('the wait doubles with chance in it, ends at five minutes, and respects what the server asks', async () => {
   const { waitAfter } = await openWindow('sync/backoff');
   assert.equal(waitAfter(0, null, 0), 1_000);

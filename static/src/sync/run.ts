@@ -37,9 +37,13 @@ export async function start(): Promise<void> {
     if (document.visibilityState === 'visible') now();
   });
   session.watch(() => now());
-  await readSession();
-  const mended = await mendOutbox();
-  if (mended > 0) console.warn(`${mended} waiting entries were not in the outbox`);
+  try {
+    await readSession();
+    const mended = await mendOutbox();
+    if (mended > 0) console.warn(`${mended} waiting entries were not in the outbox`);
+  } catch (error) {
+    console.error('store:', error); // the page shows storeHealth; a later try may find the store again
+  }
   await countWaiting();
   now();
 }
@@ -126,10 +130,15 @@ async function round(): Promise<void> {
   }
 }
 
-/** Tells how many wait; true: a request could take some now. */
+/** Tells how many wait; true: a request could take some now. A store that fails is told of by storeHealth. */
 async function countWaiting(): Promise<boolean> {
-  const { waiting } = await counts();
-  // "up to date" with something waiting would be untrue, also for the moment before it goes up.
-  note(waiting > 0 && status.value.state === 'up to date' ? { waiting, state: 'sending' } : { waiting });
-  return (await outgoing()) > 0;
+  try {
+    const { waiting } = await counts();
+    // "up to date" with something waiting would be untrue, also for the moment before it goes up.
+    note(waiting > 0 && status.value.state === 'up to date' ? { waiting, state: 'sending' } : { waiting });
+    return (await outgoing()) > 0;
+  } catch (error) {
+    console.error('store:', error);
+    return false;
+  }
 }

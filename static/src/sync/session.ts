@@ -31,7 +31,14 @@ export async function readSession(): Promise<void> {
     follows = true;
     onChange(() => void readSession().catch(() => undefined)); // that the store is gone is said by storeHealth
   }
-  const kept = await keptSession();
+  let kept: Session | null;
+  try {
+    kept = await keptSession();
+  } catch (error) {
+    // With a store that cannot be read nobody is known: the page then says what is wrong with it, rather than open for ever.
+    if (observed.value === undefined) observed.set(null);
+    throw error;
+  }
   if (JSON.stringify(kept) !== JSON.stringify(observed.value)) observed.set(kept);
 }
 

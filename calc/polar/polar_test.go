@@ -4,6 +4,7 @@ import (
 	"encoding/csv"
 	"fmt"
 	"math"
+	"math/cmplx"
 	"os"
 	"path/filepath"
 	"strconv"
@@ -262,4 +263,28 @@ func ExamplePair_Receive() {
 	fmt.Printf("swapped by the mirror: %v, cross-talk %.1f dB, SINR %.1f dB of 25\n",
 		p.Crossed, -db(r.CrossTalk), db(r.SINR(math.Pow(10, 2.5))))
 	// Output: swapped by the mirror: true, cross-talk 17.0 dB, SINR 16.4 dB of 25
+}
+
+// TestRightHandTurnsClockwiseSeenFromBehind: the field Re(e·exp(jωt)) of a right-hand
+// port turns from up toward right as time goes, that of a left-hand one the other way
+// (IEEE Std 145), whatever the slant and the axial ratio.
+func TestRightHandTurnsClockwiseSeenFromBehind(t *testing.T) {
+	for _, left := range []bool{false, true} {
+		for _, axial := range []float64{1, 0.5, 0.1} {
+			for _, slant := range []float64{0, 0.3, -1, 2} {
+				e := polar.Port{SlantRad: slant, Axial: axial, LeftHand: left}.Vector()
+				at := func(phase float64) (up, right float64) {
+					w := cmplx.Rect(1, phase)
+					return real(e[0] * w), real(e[1] * w)
+				}
+				for phase := 0.0; phase < 2*math.Pi; phase += 0.5 {
+					up, right := at(phase)
+					up1, right1 := at(phase + 0.01)
+					if clockwise := up*right1-right*up1 > 0; clockwise == left {
+						t.Fatalf("left %v, axial %g, slant %g: turns clockwise: %v", left, axial, slant, clockwise)
+					}
+				}
+			}
+		}
+	}
 }

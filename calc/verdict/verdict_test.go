@@ -165,6 +165,25 @@ func TestNobodyMeasuredIsNoFault(t *testing.T) {
 	}
 }
 
+// TestDoubtOfAnAxisNotTaped: an axis that nobody taped hangs on the bar that another
+// axis was taped along, 10 mm; an antenna that nobody taped at all hangs by eye, 50 mm
+// (both common practice).
+func TestDoubtOfAnAxisNotTaped(t *testing.T) {
+	s := job(t, "two-crossed-panels")
+	b := &s.Near.Antennas[1].Position
+	right := *b.Planned.Right
+	b.AsLeft = []sheet.Position{{Right: &right, UMM: 3, How: sheet.How{Method: "tape"}}}
+	v := judged(t, s)
+	if g := v.Geometry.Antennas[1].AsLeft; math.Abs(g.URightMM-3) > 1e-9 || math.Abs(g.UUpMM-10) > 1e-9 || math.Abs(g.UForwardMM-10) > 1e-9 || len(v.Missing) != 0 {
+		t.Errorf("taped along one axis: %+v, missing %v", g, v.Missing)
+	}
+	b.AsLeft = nil
+	v = judged(t, s)
+	if g := v.Geometry.Antennas[1].AsLeft; math.Abs(g.URightMM-50) > 1e-9 || math.Abs(g.UUpMM-50) > 1e-9 || len(v.Missing) != 1 {
+		t.Errorf("not taped: %+v, missing %v", g, v.Missing)
+	}
+}
+
 // TestTheSameSkewTwoRadios: 8° of common skew. The tied radio is disturbed, the
 // combining one is not, and the tool says so instead of calling it a fault.
 func TestTheSameSkewTwoRadios(t *testing.T) {

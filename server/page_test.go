@@ -3,6 +3,7 @@ package server
 import (
 	"strings"
 	"testing"
+	"time"
 
 	"crossplumb/static"
 )
@@ -66,6 +67,15 @@ func TestPages(t *testing.T) {
 }
 
 // What mkstatic built, where it was built, is sent with the right types.
+// A phone at a cell's edge takes the whole page in one go before it is ready without coverage. 1.2 MB is the budget that
+// mkstatic holds it to; 100 kbit/s is what readTimeout reckons with as well.
+func TestASlowPhoneCanTakeThePage(t *testing.T) {
+	const budget, rate = 1.2e6, 100e3 / 8 // bytes, bytes/s
+	if needs := time.Duration(budget / rate * float64(time.Second)); writeTimeout < needs*3/2 {
+		t.Errorf("an answer is cut after %v; the page takes %v at 100 kbit/s", writeTimeout, needs)
+	}
+}
+
 func TestBuiltPages(t *testing.T) {
 	files, err := static.Load()
 	if err != nil {

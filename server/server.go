@@ -71,7 +71,7 @@ const (
 	maxHeader    = 16 << 10
 	maxConns     = 4096
 	readTimeout  = 30 * time.Second // a batch over a cell's edge at 100 kbit/s takes 20 s
-	writeTimeout = 60 * time.Second
+	writeTimeout = 3 * time.Minute  // the phone page with its wasm, 1.2 MB at most, takes 96 s at the same rate
 	idleTimeout  = 75 * time.Second
 )
 

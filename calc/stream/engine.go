@@ -123,6 +123,7 @@ var (
 	errXPR   = errors.New("the cross-polar ratio must be above 0")
 	errPlace = errors.New("two elements of like polarization are planned in one place")
 	errK     = errors.New("the Ricean factor must not be negative")
+	errWide  = errors.New("the antennas of one end stand so deep behind each other, in wavelengths, that scatter between them is not modelled; bring them nearer to one plane or describe the surroundings by reflectors")
 	errFar   = errors.New("the ends are nearer to each other than the mounts are wide")
 	errMirr  = errors.New("a reflector stands on one of the mounts")
 )
@@ -197,6 +198,9 @@ func prepare(setup Setup, near, far []antenna.Body) (*Engine, error) {
 			e.same, e.cross = 1, 0
 			if !math.IsInf(a.XPR, 1) {
 				e.same, e.cross = a.XPR/(1+a.XPR), 1/(1+a.XPR)
+			}
+			if !e.near.resolvable(&a.Near) || !e.far.resolvable(&a.Far) {
+				return nil, errWide
 			}
 		}
 	}

@@ -164,6 +164,7 @@ type spectrum struct {
 	re, im  [][]float64 // per unit and node: pattern × √weight × e^{jkΩ·r}
 	grams   [][4]complex128
 	gramOK  []bool
+	apart   []bool // per pair of units: too far for any correlation
 	changed []bool
 }
 
@@ -175,7 +176,9 @@ func poseOf(b *antenna.Body) pose {
 
 func newSpectrum(m *mount, a *scatter.Angular, tolerance float64) *spectrum {
 	s := &spectrum{m: m}
-	s.take(a.Nodes(m.resolution(tolerance)), tolerance)
+	r, apart := m.resolution(a, tolerance)
+	s.apart = apart
+	s.take(a.Nodes(r), tolerance)
 	nb, nu := len(m.bodies), len(m.units)
 	s.cached, s.valid, s.changed = make([]pose, nb), make([]bool, nb), make([]bool, nb)
 	flat := make([]float64, (3*nb+2*nu)*len(s.nodes))
@@ -232,25 +235,15 @@ func (s *spectrum) take(nodes []scatter.Node, tolerance float64) {
 	}
 }
 
-// resolution is how finely this end's field varies over direction: the extent of the array as planned, plus a
-// wavelength for what a crew may move, and its narrowest main lobe.
-func (m *mount) resolution(tolerance float64) scatter.Resolution {
-	r := scatter.Resolution{Tolerance: tolerance}
-	var across, up float64
-	for i := range m.units {
-		for j := range i {
-			p, q := m.units[i], m.units[j]
-			r0, u0, f0 := m.bodies[p.body].PortPosition(p.first)
-			r1, u1, f1 := m.bodies[q.body].PortPosition(q.first)
-			across = math.Max(across, math.Hypot(r0-r1, f0-f1))
-			up = math.Max(up, math.Abs(u0-u1))
-		}
-	}
-	if len(m.bodies) > 1 {
-		across += 2 * math.Pi / m.k
-		up += 2 * math.Pi / m.k
-	}
-	r.PhaseAz, r.PhaseEl = m.k*across, m.k*up
+// decorrelated is the product of wave number, distance and spread beyond which two places count as uncorrelated: a
+// Laplacian leaves 2/q² = 1.3e-3 of correlation there, its square two millionths, a Gaussian nothing.
+const decorrelated = 40
+
+// resolution is how finely this end's field varies over direction: the extent of the array as planned, plus a wavelength
+// for what a crew may move, and its narrowest main lobe. Pairs of units too far apart for any correlation are marked and
+// need no resolving.
+func (m *mount) resolution(a *scatter.Angular, tolerance float64) (r scatter.Resolution, apart []bool) {
+	r = scatter.Resolution{Tolerance: tolerance}
 	least := func(w *float64, b float64) {
 		if b > 0 && (*w == 0 || b < *w) {
 			*w = b
@@ -265,7 +258,60 @@ func (m *mount) resolution(tolerance float64) scatter.Resolution {
 		least(&r.BeamEl, el)
 		least(&r.BeamEl, 3*az)
 	}
-	return r
+	// A narrow lobe sees only its own part of a wide spread; its power pattern has the standard deviation width/2.355.
+	seen := func(form scatter.Form, sigma, beam float64) float64 {
+		if form == scatter.Uniform || form == scatter.Cosine {
+			return 0 // correlation dies out too slowly to be cut off
+		}
+		if beam > 0 {
+			sigma = 1 / math.Sqrt(1/(sigma*sigma)+2.355*2.355/(beam*beam))
+		}
+		return sigma
+	}
+	sa, se := seen(a.AzimuthForm, a.AzimuthSpread, r.BeamAz), seen(a.ElevationForm, a.ElevationSpread, r.BeamEl)
+	n := len(m.units)
+	apart = make([]bool, n*n)
+	var across, up float64
+	for i := range m.units {
+		for j := range i {
+			p, q := m.units[i], m.units[j]
+			r0, u0, f0 := m.bodies[p.body].PortPosition(p.first)
+			r1, u1, f1 := m.bodies[q.body].PortPosition(q.first)
+			if p.body != q.body && (m.k*math.Abs(r0-r1)*sa > decorrelated || m.k*math.Abs(u0-u1)*se > decorrelated) {
+				apart[i*n+j], apart[j*n+i] = true, true
+				continue
+			}
+			across = math.Max(across, math.Hypot(r0-r1, f0-f1))
+			up = math.Max(up, math.Abs(u0-u1))
+		}
+	}
+	if len(m.bodies) > 1 {
+		across += 2 * math.Pi / m.k
+		up += 2 * math.Pi / m.k
+	}
+	r.PhaseAz, r.PhaseEl = m.k*across, m.k*up
+	return r, apart
+}
+
+// resolvable reports whether a quadrature over the spectrum stays within reason: about 200,000 directions.
+func (m *mount) resolvable(a *scatter.Angular) bool {
+	r, _ := m.resolution(a, fineTolerance)
+	span := func(form scatter.Form, sigma, half float64) float64 {
+		if form == scatter.Uniform || form == scatter.Cosine {
+			return half
+		}
+		return math.Min(10*sigma, half)
+	}
+	lobe := func(beam float64) float64 {
+		if beam > 0 {
+			return 1 / beam
+		}
+		return 0
+	}
+	// About one direction for each radian of phase, and a few for each main lobe and for the shape of the density.
+	az := 40 + span(a.AzimuthForm, a.AzimuthSpread, math.Pi)*2*(r.PhaseAz+4*lobe(r.BeamAz))
+	el := 40 + span(a.ElevationForm, a.ElevationSpread, math.Pi/2)*2*(r.PhaseEl+4*lobe(r.BeamEl))
+	return az*el < 4e5
 }
 
 // fields brings the stored fields of every body to where it hangs now.
@@ -345,7 +391,9 @@ func (s *spectrum) update(bodies []antenna.Body) {
 			if s.gramOK[u*nu+v] && !s.changed[bu] && !s.changed[bv] {
 				continue
 			}
-			s.grams[u*nu+v] = s.gram(u, v)
+			if !s.apart[u*nu+v] {
+				s.grams[u*nu+v] = s.gram(u, v)
+			}
 			s.gramOK[u*nu+v] = true
 		}
 	}

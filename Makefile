@@ -55,6 +55,25 @@ test-page:
 tools:
 	.ci/tools
 
+## bench: ours beside a yardstick in numpy and scipy (Debian: python3-numpy python3-scipy), in the same run
+bench:
+	@/usr/bin/python3 -c 'import numpy, scipy' || { echo "make bench needs python3-numpy and python3-scipy (Debian packages)" >&2; exit 1; }
+	go test -run XXX -bench . -benchmem -count 3 ./calc/verdict ./calc/stream ./calc/scatter ./calc/fault
+	/usr/bin/python3 testdata/yardstick/yardstick.py
+	go test -tags $(TAGS) -run XXX -bench . ./db
+
+## calibrate: ten thousand simulated mounts with known truth, judged; prints the table (an hour or so)
+calibrate:
+	go test ./calc/verdict -run '^TestCalibration$$' -v -timeout 6h -calibrate 10000
+
+## fuzz: every operation behind the door, FUZZTIME each; what is found is kept as a seed
+FUZZTIME ?= 30m
+fuzz:
+	for target in $$(grep -ho '^func Fuzz[A-Za-z]*' calc/wire/*_test.go | cut -c6-); do \
+	  echo "== $$target"; go test ./calc/wire -run XXX -fuzz "^$$target$$" -fuzztime $(FUZZTIME) -timeout 24h; done
+	go test ./calc/codec -run XXX -fuzz '^FuzzParse$$' -fuzztime $(FUZZTIME) -timeout 24h
+	go test -tags $(TAGS) ./server -run XXX -fuzz '^FuzzReadEntry$$' -fuzztime $(FUZZTIME) -timeout 24h
+
 ## vuln: known vulnerabilities in what we call
 vuln:
 	.ci/vuln

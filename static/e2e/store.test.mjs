@@ -154,6 +154,22 @@ test('a lost connection is opened once more', async () => {
   await store.closeDatabase();
 });
 
+test('every request went well, but the disk did not take it: the entry is not called kept', async (t) => {
+  const store = await storeWindow();
+  await store.keepSession(SESSION);
+  await store.addEntry('note.added', JOB, null, { text: 'first' });
+  const put = IDBObjectStore.prototype.put;
+  t.mock.method(IDBObjectStore.prototype, 'put', function (value, key) {
+    const request = put.call(this, value, key);
+    if (key === 'device') request.addEventListener('success', () => this.transaction.abort()); // as a full disk does at commit
+    return request;
+  });
+  await assert.rejects(store.addEntry('note.added', JOB, null, { text: 'not kept' }));
+  t.mock.restoreAll();
+  assert.deepEqual((await store.ownEntries()).map((one) => one.entry.body.text), ['first']);
+  await store.closeDatabase();
+});
+
 test('a connection that is lost after the entry was written does not make it twice', async (t) => {
   const store = await storeWindow();
   await store.keepSession(SESSION);

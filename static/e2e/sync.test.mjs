@@ -353,6 +353,7 @@ test('jobs come in with the entries of others, and own ones that come back are s
   server.spoil = (url) => (url === '/api/jobs' ? json({ jobs: [] }) : null);
   await phone.pull();
   assert.deepEqual(await phone.jobs(), []);
+  assert.deepEqual((await phone.entriesOf(JOB)).map((one) => one.entry.id), [mine], 'what others wrote there is not kept');
   assert.equal((await phone.ownEntries()).length, 1, 'what was made here stays');
 });
 

@@ -144,6 +144,7 @@ func build(gen *folder, options api.BuildOptions) (built, error) {
 	options.LegalComments = api.LegalCommentsNone // gathered in licences.txt instead
 	options.Loader = map[string]api.Loader{".woff2": api.LoaderFile}
 	options.Engines = browsers
+	options.PreserveSymlinks = true // where node_modules really lies must not show in the hashes
 	options.LogLevel = api.LogLevelSilent
 	options.Charset = api.CharsetUTF8
 

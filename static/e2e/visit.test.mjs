@@ -217,6 +217,7 @@ test('a crossed pair, from mast to sign-off, with the server killed in the middl
     await picture(page, 'phone-07-as-found');
     await strip(page).click();
     await page.getByRole('heading', { name: 'Verdict' }).waitFor();
+    await page.getByText('Value, doubt and limit').first().waitFor();
     await picture(page, 'phone-08-verdict');
     await page.goBack();
     await waiting(page, 0);

@@ -105,7 +105,8 @@ async function round(): Promise<void> {
     note({ state: session.value === null ? 'sign in' : 'starting', signedIn: false });
     return;
   }
-  noteState('sending');
+  // A look for news while all is well is not worth a word.
+  if (status.value.state !== 'up to date' || status.value.waiting > 0) noteState('sending');
   try {
     await push();
     await pull();

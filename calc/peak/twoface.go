@@ -12,6 +12,31 @@ type Face struct {
 	Count        float64
 }
 
+// FaceOf is the face of a few readings, in radians: their mean x̄ and standard
+// deviation
+//
+//	s² = Σ (xᵢ − x̄)²/(n − 1)        JCGM 100:2008, 4.2.2
+//
+// zero for a single reading. The readings lie within a quarter turn, so that their
+// plain mean is their vector mean to second order. Panics without readings.
+func FaceOf(readings []float64) Face {
+	if len(readings) == 0 {
+		panic("peak: a face without readings")
+	}
+	n := float64(len(readings))
+	f := Face{Count: n}
+	for _, x := range readings {
+		f.Mean += x / n
+	}
+	for _, x := range readings {
+		f.Spread += (x - f.Mean) * (x - f.Mean)
+	}
+	if n > 1 {
+		f.Spread = math.Sqrt(f.Spread / (n - 1))
+	}
+	return f
+}
+
 // Uncertainty that stays when the bias is gone: the instrument's own
 // non-linearity and how it is laid on. Common practice; static errors of phones
 // are published as under 0.3° (Sensors 15, 2015), most of it bias.

@@ -20,7 +20,7 @@ func peakOperations() []operation {
 // dBm, so a positive one has lost its sign.
 var receivedLevel = codec.Range{Min: -150, Max: 0, Suggestion: "received levels are negative dBm: −55, not 55"}
 
-// maxReadings bounds the readings of one search and of one face.
+// How many levels one search, and how many readings one face may have.
 const (
 	maxLevels  = 500
 	maxSamples = 20000
@@ -153,12 +153,32 @@ func tiltTwoFace(v *codec.Value) (answer, *Problem) {
 	f := codec.Open(v)
 	spread := codec.Range{Min: 0, Max: 45, Suggestion: "the standard deviation of the readings with this face"}
 	count := codec.Range{Min: 1, Max: 1e6, Suggestion: "how many independent readings"}
+	// A face is given as what was read on it, or as the mean of that with its spread and count.
 	read := func(face string) peak.Face {
-		return peak.Face{
-			Mean:   f.Number("face_"+face+"_deg", faceAngle) * degree,
+		mean := f.MaybeNumber("face_"+face+"_deg", faceAngle)
+		given := peak.Face{
 			Spread: f.NumberOr("spread_"+face+"_deg", 0, spread) * degree,
 			Count:  f.NumberOr("count_"+face, 1, count),
 		}
+		readings := f.MaybeNumbers("readings_"+face+"_deg", 1, maxSamples, faceAngle)
+		switch {
+		case v.Described() || f.Problem() != nil:
+		case mean == nil && readings == nil:
+			f.Fail(f.Refuse("face_"+face+"_deg", codec.MissingField, "give what was read on this face, or the mean of it"))
+		case mean != nil && readings != nil:
+			f.Fail(f.Refuse("readings_"+face+"_deg", codec.Impossible, "give the readings of this face or their mean, not both"))
+		case readings != nil && (given.Spread != 0 || given.Count != 1):
+			f.Fail(f.Refuse("readings_"+face+"_deg", codec.Impossible, "the readings speak for their own spread and count; leave those out"))
+		case readings != nil:
+			angles := make([]float64, len(readings))
+			for i, x := range readings {
+				angles[i] = x * degree
+			}
+			return peak.FaceOf(angles)
+		case mean != nil:
+			given.Mean = *mean * degree
+		}
+		return given
 	}
 	a, b := read("a"), read("b")
 	tilt := f.MaybeNumber("edge_tilt_deg", codec.Between(-80, 80))

@@ -31,25 +31,15 @@ export function TwoFaces({ draftKey, onTake }: TwoFacesProps) {
   );
 }
 
-interface Face {
-  mean: number;
-  spread: number;
-  count: number;
-}
-
-/** Mean and standard deviation of what was read with one face; the doubt of the answer is calc's to make of them. */
-function faceOf(form: Form, face: 'a' | 'b'): Face | null {
-  const values = readings.map((n) => numberIn(form, `${face}${n}`)).filter((x): x is number => x !== null);
-  if (values.length === 0) return null;
-  const mean = values.reduce((sum, x) => sum + x, 0) / values.length;
-  const squares = values.reduce((sum, x) => sum + (x - mean) ** 2, 0);
-  return { mean, spread: values.length > 1 ? Math.sqrt(squares / (values.length - 1)) : 0, count: values.length };
+/** What was read with one face, as typed; its mean, its spread and the doubt of the answer are calc's to make. */
+function readOn(form: Form, face: 'a' | 'b'): number[] {
+  return readings.map((n) => numberIn(form, `${face}${n}`)).filter((x): x is number => x !== null);
 }
 
 function Faces({ form, onTake }: { form: Form; onTake: TwoFacesProps['onTake'] }) {
-  const a = faceOf(form, 'a');
-  const b = faceOf(form, 'b');
-  const asked = a && b ? { face_a_deg: a.mean, face_b_deg: b.mean, spread_a_deg: a.spread, spread_b_deg: b.spread, count_a: a.count, count_b: b.count } : null;
+  const a = readOn(form, 'a');
+  const b = readOn(form, 'b');
+  const asked = a.length > 0 && b.length > 0 ? { readings_a_deg: a, readings_b_deg: b } : null;
   const found = useReckoned<TwoFace>(ask, 'tilt.twoface', asked);
   const unread = (['a', 'b'] as const).some((face) => readings.some((n) => errorIn(form, `${face}${n}`, true) !== null));
   return (
@@ -59,7 +49,7 @@ function Faces({ form, onTake }: { form: Form; onTake: TwoFacesProps['onTake'] }
         <fieldset class="stack" key={face}>
           <legend class="field-label">{say(`faces.${face}`)}</legend>
           {readings.map((n, i) => (
-            <Field key={n} form={form} name={`${face}${n}`} label={say('faces.reading', { n })} unit="°" optional={i > 0} problem={told(found.problem, `face_${face}_deg`)} />
+            <Field key={n} form={form} name={`${face}${n}`} label={say('faces.reading', { n })} unit="°" optional={i > 0} problem={told(found.problem, `readings_${face}_deg`)} />
           ))}
         </fieldset>
       ))}
@@ -76,7 +66,7 @@ function Faces({ form, onTake }: { form: Form; onTake: TwoFacesProps['onTake'] }
           </Button>
         </>
       )}
-      {found.problem && !/^face_/.test(found.problem.field) && <Message tone="wrong">{found.problem.message}</Message>}
+      {found.problem && !/^readings_/.test(found.problem.field) && <Message tone="wrong">{found.problem.message}</Message>}
     </div>
   );
 }

@@ -256,3 +256,31 @@ test('local time carries the offset of the place', async () => {
     else process.env.TZ = before;
   }
 });
+
+test('storage is called protected only when the browser said so, and it is asked until it does', async (t) => {
+  const before = Object.getOwnPropertyDescriptor(globalThis, 'navigator');
+  t.after(() => (before ? Object.defineProperty(globalThis, 'navigator', before) : delete globalThis.navigator));
+  for (const [persisted, persist, want, asked] of [
+    [true, false, 'protected', 0],
+    [false, true, 'protected', 1],
+    [false, false, 'not protected', 1],
+    [new Error('no'), false, 'unknown', 0],
+  ]) {
+    let times = 0;
+    const storage = {
+      persisted: async () => {
+        if (persisted instanceof Error) throw persisted;
+        return persisted;
+      },
+      persist: async () => {
+        times++;
+        return persist;
+      },
+    };
+    Object.defineProperty(globalThis, 'navigator', { value: { storage }, configurable: true });
+    const phone = await openWindow('store/protection');
+    assert.equal(phone.storageProtection.value, 'unknown');
+    await phone.askForProtection();
+    assert.deepEqual([phone.storageProtection.value, times], [want, asked]);
+  }
+});

@@ -172,7 +172,7 @@ func (d *density) rule(tol, phase, beam float64) (x, w []float64) {
 		power := tol * real(want[0])
 		for i, v := range d.trial(tx, tw, phase, beam) {
 			dr, di := real(v)-real(want[i]), imag(v)-imag(want[i])
-			if dr*dr+di*di > power*power {
+			if !(dr*dr+di*di <= power*power) {
 				return false
 			}
 		}

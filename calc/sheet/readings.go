@@ -68,7 +68,8 @@ func readU(f *codec.Fields, planned bool, max float64) float64 {
 	if planned {
 		return f.NumberOr("u", 0, codec.Range{Min: 0, Max: 0, Suggestion: "a plan has no uncertainty"})
 	}
-	r := codec.Above(0, max)
+	// A millionth of a degree or millimetre is beyond any instrument; pooling squares and inverts it.
+	r := codec.Between(1e-6, max)
 	r.Suggestion = "the standard uncertainty of the reading; no reading is exact"
 	return f.Number("u", r)
 }

@@ -236,7 +236,7 @@ func (s *spectrum) take(nodes []scatter.Node, tolerance float64) {
 }
 
 // decorrelated is the product of wave number, distance and spread beyond which two places count as uncorrelated: a
-// Laplacian leaves 2/q² = 1.3e-3 of correlation there, its square two millionths, a Gaussian nothing.
+// Laplacian leaves 2/q² = 1.3e-3 of correlation there, twice that at 20° of spread, its square below 1e-5.
 const decorrelated = 40
 
 // resolution is how finely this end's field varies over direction: the extent of the array as planned, plus a wavelength

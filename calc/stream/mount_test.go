@@ -1031,3 +1031,39 @@ func TestNewRefuses(t *testing.T) {
 	}()
 	e.Evaluate(near[:1], far)
 }
+
+// TestApart: what is left out as uncorrelated is indeed next to nothing, and what can not be resolved is refused.
+func TestApart(t *testing.T) {
+	// At the edge of the rule: q = kdσ = 40.
+	sigma := 20 * degree
+	d := decorrelated / (2 * math.Pi * sigma)
+	for kind, most := range map[scatter.SpectrumKind]float64{scatter.SpectrumLaplacian: 3e-3, scatter.SpectrumGaussian: 1e-4} {
+		if got := cmplx.Abs(scatter.Correlation(scatter.Spectrum{Kind: kind, SpreadRad: sigma}, d, 0)); got > most {
+			t.Errorf("%v: correlation %v left, want at most %v", kind, got, most)
+		}
+	}
+	iso := func(r, u, f float64) antenna.Body {
+		return antenna.Body{Right: r, Up: u, Forward: f, Ports: make([]antenna.Port, 1)}
+	}
+	spread := scatter.Angular{AzimuthSpread: sigma, ElevationSpread: 3 * degree}
+	s := link(scatter.Surroundings{XPR: linear(9), Near: spread, Far: spread}, 20)
+	// Just within and just beyond: no step that a limit would notice.
+	var before Result
+	for i, share := range []float64{0.999, 1.001} {
+		two := []antenna.Body{iso(0, 0, 0), iso(share*d*lambda, 0, 0)}
+		r := planned(t, s, two, two)
+		if i == 1 && (math.Abs(r.BitsPerSHz-before.BitsPerSHz) > 0.03 || r.NearEnvelope != 0 || before.NearEnvelope > 1e-5) {
+			t.Errorf("a step: %+v, %+v", before, r)
+		}
+		before = r
+	}
+	// Side by side by ten thousand wavelengths costs nothing; one behind the other can not be resolved.
+	wide := []antenna.Body{iso(0, 0, 0), iso(1e4*lambda, 0, 0)}
+	if _, err := New(s, wide, wide); err != nil {
+		t.Error(err)
+	}
+	deep := []antenna.Body{iso(0, 0, 0), iso(0, 0, 1e4*lambda)}
+	if _, err := New(s, deep, wide); err == nil {
+		t.Error("ten thousand wavelengths of depth accepted")
+	}
+}

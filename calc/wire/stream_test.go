@@ -55,7 +55,7 @@ func TestStreamsOfSheetsWithOtherNumbers(t *testing.T) {
 		longest = max(longest, time.Since(begin))
 		switch {
 		case p != nil && (p.Code == "internal" || p.Message == ""):
-			t.Fatalf("%v", p)
+			t.Fatalf("%v of %s", p, changed)
 		case p != nil:
 			refused++
 		case !json.Valid(out):

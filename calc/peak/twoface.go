@@ -91,6 +91,7 @@ type Held struct {
 const (
 	standardGravity = 9.80665 // m/s², CGPM 1901
 	shakeLimit      = 0.3     // m/s²: beyond, a hand or the wind moves the instrument
+	offsetLimit     = 0.5     // m/s²: how far from gravity a phone's zeros may put it at rest
 	outlierLimit    = 4.0     // robust standard deviations
 	stillSpread     = 0.1 * math.Pi / 180
 	StillSeconds    = 3.0  // enough when it is still
@@ -98,16 +99,17 @@ const (
 )
 
 // Hold averages a stretch of samples. Samples whose acceleration is not gravity's
-// alone are rejected, then those farther than four robust standard deviations from
+// alone (as this instrument measures it at rest) are rejected, then those farther than four robust standard deviations from
 // the median. What is left is averaged; because neighbours in time are alike, the
 // count of independent samples is n (1 − r)/(1 + r), with r the correlation of
 // neighbours (the variance of the mean of a first-order autoregressive series).
 // The top of a mast sways slowly: three seconds are enough only when it is still.
 // ok is false when nothing is left.
 func Hold(samples []Sample) (h Held, ok bool) {
+	rest := atRest(samples)
 	calm := make([]Sample, 0, len(samples))
 	for _, s := range samples {
-		if s.Gravity == 0 || math.Abs(s.Gravity-standardGravity) <= shakeLimit {
+		if s.Gravity == 0 || math.Abs(s.Gravity-rest) <= shakeLimit {
 			calm = append(calm, s)
 		}
 	}
@@ -154,8 +156,35 @@ func Hold(samples []Sample) (h Held, ok bool) {
 	}
 	h.Count = math.Max(1, n*(1-r)/(1+r))
 	h.Still = h.Spread <= stillSpread && math.Abs(h.Drift) <= stillSpread
-	h.Enough = h.Duration >= SwaySeconds || h.Still && h.Duration >= StillSeconds
+	h.Enough = h.Duration >= h.Needed()
 	return h, true
+}
+
+// Needed is for how many seconds to hold on in all: fewer when it is still.
+func (h Held) Needed() float64 {
+	if h.Still {
+		return StillSeconds
+	}
+	return SwaySeconds
+}
+
+// atRest is the length that an acceleration has when nothing moves: the middle of
+// what was seen, because a phone's own zeros shift it, where that can be gravity.
+func atRest(samples []Sample) float64 {
+	known := make([]Sample, 0, len(samples))
+	for _, s := range samples {
+		if s.Gravity != 0 {
+			known = append(known, s)
+		}
+	}
+	if len(known) == 0 {
+		return standardGravity
+	}
+	seen := median(known, func(s Sample) float64 { return s.Gravity })
+	if math.Abs(seen-standardGravity) > offsetLimit {
+		return standardGravity
+	}
+	return seen
 }
 
 func median(samples []Sample, of func(Sample) float64) float64 {

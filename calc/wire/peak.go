@@ -12,7 +12,7 @@ func peakOperations() []operation {
 	return []operation{
 		{"peak.fit", peakFit, []string{"main-lobe form −12(θ/θ₃dB)² of 3GPP TR 38.901 table 7.3-1", "Balanis, Antenna Theory, tables 12.1 and 12.2 (side lobes of uniform apertures)", "JCGM 100:2008", "odds of a side lobe beforehand 0.3, doubt of a beamwidth 10 %: common practice"}},
 		{"tilt.twoface", tiltTwoFace, []string{"reversal of an instrument, common practice of surveying", "JCGM 100:2008", "floor 0.1°: common practice"}},
-		{"tilt.face", tiltFace, []string{"variance of the mean of a first-order autoregressive series", "limits of shake, sway and stillness: common practice"}},
+		{"tilt.face", tiltFace, []string{"variance of the mean of a first-order autoregressive series", "W3C Device Orientation and Motion (axes and sign of an acceleration)", "limits of shake, sway and stillness: common practice"}},
 	}
 }
 
@@ -181,11 +181,13 @@ func tiltTwoFace(v *codec.Value) (answer, *Problem) {
 		return given
 	}
 	a, b := read("a"), read("b")
+	scale := f.NumberOr("u_scale", 0, codec.Range{Min: 0, Max: 1, Suggestion: "standard uncertainty of the instrument's scale as a share of the angle; tilt.face tells a phone's"})
 	tilt := f.MaybeNumber("edge_tilt_deg", codec.Between(-80, 80))
 	if p := f.Done(); p != nil {
 		return nil, p
 	}
 	angle, bias, u := peak.TwoFace(a, b)
+	u = peak.WithScale(u, scale, angle)
 	out := codec.Obj(
 		codec.M("tilt_deg", deg(angle)),
 		codec.M("bias_deg", deg(bias)),
@@ -206,37 +208,136 @@ func tiltTwoFace(v *codec.Value) (answer, *Problem) {
 	return out, nil
 }
 
-func tiltFace(v *codec.Value) (answer, *Problem) {
-	f := codec.Open(v)
+// poses are the ways to hold a phone, by the names that the door has for them.
+var poses = map[string]peak.Pose{"face_up": peak.FaceUp, "skew": peak.SkewOnBack, "tilt_by_edge": peak.TiltByEdge, "tilt": peak.TiltOnBack}
+
+// componentRange holds what a phone's accelerometer can give along one axis.
+var componentRange = codec.Range{Min: -200, Max: 200, Suggestion: "accelerationIncludingGravity along this axis, m/s²"}
+
+// faceSamples reads what was sampled on one face: angles of an instrument that gives
+// angles, or the accelerations of a phone and how it is held. turned is how many
+// samples say nothing because the phone is not held so; sign is what a phone lying
+// face up tells, 0 otherwise.
+func faceSamples(v *codec.Value, f *codec.Fields) (samples []peak.Sample, turned int, sign float64) {
 	times := f.Numbers("t_s", 1, maxSamples, codec.Range{Min: -1e9, Max: 1e9, Suggestion: "seconds"})
-	angles := f.Numbers("angles_deg", 1, maxSamples, faceAngle)
+	angles := f.MaybeNumbers("angles_deg", 1, maxSamples, faceAngle)
 	gravity := f.MaybeNumbers("g_m_s2", 1, maxSamples, codec.Range{Min: 0, OpenMin: true, Max: 200, Suggestion: "the length of the acceleration, gravity in it"})
-	if !v.Described() && f.Problem() == nil {
-		if len(times) != len(angles) {
-			f.Fail(f.Refuse("angles_deg", codec.Impossible, "there must be one angle for each time"))
-		}
-		if gravity != nil && len(gravity) != len(angles) {
-			f.Fail(f.Refuse("g_m_s2", codec.Impossible, "there must be one acceleration for each angle, or none at all"))
-		}
-		for i := 1; i < len(times) && f.Problem() == nil; i++ {
-			if times[i] < times[i-1] {
-				f.Fail(f.Refuse("t_s", codec.Impossible, "the times must not run backwards"))
-			}
+	names := [3]string{"ax_m_s2", "ay_m_s2", "az_m_s2"}
+	var along [3][]float64
+	for i, name := range names {
+		along[i] = f.MaybeNumbers(name, 1, maxSamples, componentRange)
+	}
+	axis := f.MaybeChoice("axis", "tilt_by_edge", "skew", "tilt", "face_up")
+	up := f.MaybeNumber("up_sign", codec.Range{Min: -1, Max: 1, Whole: true, Suggestion: "1 or −1, as a phone that lies face up told"})
+	refuse := func(name, code, message string) { f.Fail(f.Refuse(name, code, message)) }
+	if v.Described() || f.Problem() != nil {
+		return nil, 0, 0
+	}
+	for i := 1; i < len(times); i++ {
+		if times[i] < times[i-1] {
+			refuse("t_s", codec.Impossible, "the times must not run backwards")
+			return nil, 0, 0
 		}
 	}
+	raw := false
+	for i := range along {
+		raw = raw || along[i] != nil
+	}
+	if !raw {
+		switch {
+		case angles == nil:
+			refuse("angles_deg", codec.MissingField, "give the angles that were read, or the accelerations ax_m_s2, ay_m_s2 and az_m_s2 with axis")
+		case axis != "":
+			refuse("axis", codec.Impossible, "angles are read as they are; axis goes with accelerations")
+		case up != nil:
+			refuse("up_sign", codec.Impossible, "angles are read as they are; up_sign goes with accelerations")
+		case len(times) != len(angles):
+			refuse("angles_deg", codec.Impossible, "there must be one angle for each time")
+		case gravity != nil && len(gravity) != len(angles):
+			refuse("g_m_s2", codec.Impossible, "there must be one acceleration for each angle, or none at all")
+		}
+		if f.Problem() != nil {
+			return nil, 0, 0
+		}
+		samples = make([]peak.Sample, len(times))
+		for i := range samples {
+			samples[i] = peak.Sample{Time: times[i], Angle: angles[i] * degree}
+			if gravity != nil {
+				samples[i].Gravity = gravity[i]
+			}
+		}
+		return samples, 0, 0
+	}
+	for i, name := range names {
+		switch {
+		case along[i] == nil:
+			refuse(name, codec.MissingField, "an acceleration has three components; give this one too")
+		case len(along[i]) != len(times):
+			refuse(name, codec.Impossible, "there must be one acceleration for each time")
+		}
+	}
+	pose := poses[axis]
+	switch {
+	case angles != nil:
+		refuse("angles_deg", codec.Impossible, "give angles or accelerations, not both")
+	case gravity != nil:
+		refuse("g_m_s2", codec.Impossible, "its length comes out of the components; leave it out")
+	case axis == "":
+		refuse("axis", codec.MissingField, "say how the phone is held: tilt_by_edge, skew, tilt or face_up")
+	case pose == peak.FaceUp && up != nil:
+		refuse("up_sign", codec.Impossible, "a phone that lies face up tells the sign; leave it out")
+	case pose != peak.FaceUp && up == nil:
+		refuse("up_sign", codec.MissingField, "phones differ in the sign of gravity: lay it face up once, axis face_up gives the sign")
+	case up != nil && *up == 0:
+		refuse("up_sign", codec.OutOfRange, "1 or −1, as a phone that lies face up told")
+	}
+	if f.Problem() != nil {
+		return nil, 0, 0
+	}
+	accelerations := make([]peak.Acceleration, len(times))
+	for i := range times {
+		accelerations[i] = peak.Acceleration{X: along[0][i], Y: along[1][i], Z: along[2][i]}
+	}
+	way := 1.0
+	if up != nil {
+		way = *up
+	}
+	for i, a := range accelerations {
+		angle, ok := pose.Angle(a, way)
+		if !ok {
+			turned++
+			continue
+		}
+		samples = append(samples, peak.Sample{Time: times[i], Angle: angle, Gravity: a.Length()})
+	}
+	if len(samples) == 0 && pose != peak.FaceUp {
+		refuse("axis", codec.Impossible, "the phone lies flat: hold it upright against the antenna")
+		return nil, 0, 0
+	}
+	if pose == peak.FaceUp {
+		var told bool
+		if sign, told = peak.UpSign(accelerations); !told {
+			refuse("axis", codec.Impossible, "the phone does not lie still on its back: lay it down, screen up")
+		}
+	}
+	return samples, turned, sign
+}
+
+// tiltFace makes one face's mean out of samples. What a phone's accelerations mean,
+// with the signs, stands beside peak.Pose.
+func tiltFace(v *codec.Value) (answer, *Problem) {
+	f := codec.Open(v)
+	samples, turned, sign := faceSamples(v, f)
 	if p := f.Done(); p != nil || v.Described() {
 		return codec.Obj(), p
 	}
-	samples := make([]peak.Sample, len(times))
-	for i := range samples {
-		samples[i] = peak.Sample{Time: times[i], Angle: angles[i] * degree}
-		if gravity != nil {
-			samples[i].Gravity = gravity[i]
-		}
-	}
 	h, ok := peak.Hold(samples)
 	if !ok {
-		return nil, f.Refuse("g_m_s2", codec.Impossible, "every sample was shaken: rest the phone on the antenna and take your hand away")
+		shaken := "g_m_s2"
+		if v.Get("ax_m_s2") != nil {
+			shaken = "ax_m_s2"
+		}
+		return nil, f.Refuse(shaken, codec.Impossible, "every sample was shaken: rest the phone on the antenna and take your hand away")
 	}
 	text := "Enough."
 	switch {
@@ -246,16 +347,26 @@ func tiltFace(v *codec.Value) (answer, *Problem) {
 	default:
 		text = "The mast sways or the phone moves: hold on for twenty seconds, or type the reading of a level."
 	}
-	return codec.Obj(
+	out := codec.Obj(
 		codec.M("mean_deg", deg(h.Mean)),
 		codec.M("spread_deg", deg(h.Spread)),
 		codec.M("count", codec.Num(h.Count)),
 		codec.M("used", codec.Int(h.Used)),
-		codec.M("rejected", codec.Int(h.Shaky)),
+		codec.M("rejected", codec.Int(h.Shaky+turned)),
 		codec.M("duration_s", codec.Num(h.Duration)),
 		codec.M("drift_deg", deg(h.Drift)),
 		codec.M("still", codec.Truth(h.Still)),
 		codec.M("enough", codec.Truth(h.Enough)),
+		codec.M("seconds_needed", codec.Num(h.Needed())),
+		codec.M("up_sign", codec.Nothing()),
+		codec.M("u_scale", codec.Num(0)),
 		codec.M("text", codec.Str(text)),
-	), nil
+	)
+	if v.Get("ax_m_s2") != nil {
+		out.Set("u_scale", codec.Num(peak.PhoneScale))
+	}
+	if sign != 0 {
+		out.Set("up_sign", codec.Num(sign))
+	}
+	return out, nil
 }

@@ -40,7 +40,7 @@ func (j *judge) with(b *belief, body int, q quantity, by float64) *belief {
 func firmness(p float64) float64 { return math.Max(p, 1-p) }
 
 // deciding finds the near reading that, were it exact, would bring the probability
-// nearest to a word.
+// nearest to a word; nil where the far end's readings would bring it nearer still.
 func (j *judge) deciding(b *belief) *Deciding {
 	type candidate struct {
 		body int
@@ -62,6 +62,9 @@ func (j *judge) deciding(b *belief) *Deciding {
 	}
 	if most < 0 || most <= now+0.005 {
 		return nil // no reading here decides: the far end's doubt does
+	}
+	if most < Guard && j.farFirmness(b) > most {
+		return nil // nor is one to be read again that would do less than the far end's readings
 	}
 	at := j.at(best.body, best.q)
 	u := b.est[at].U()
@@ -92,10 +95,14 @@ func (j *judge) deciding(b *belief) *Deciding {
 }
 
 // farDecides tells whether a word would come out if the far end were known exactly.
-func (j *judge) farDecides(b *belief) bool {
+func (j *judge) farDecides(b *belief) bool { return j.farFirmness(b) >= Guard }
+
+// farFirmness is how near to a word the probability would come if the far end were
+// known exactly.
+func (j *judge) farFirmness(b *belief) float64 {
 	c := j.with(b, 0, skew, 1)
 	for at := j.at(j.near, 0); at < len(c.est); at++ {
 		c.est[at] = b.est[at].Scale(0)
 	}
-	return firmness(j.runEvery(c, 4).joint) >= Guard
+	return firmness(j.runEvery(c, 4).joint)
 }

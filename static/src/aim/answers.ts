@@ -114,6 +114,22 @@ export interface PeakAnswer {
   method: Method;
 }
 
+/** One face, as tilt.face makes it out of samples. */
+export interface FaceHeld {
+  mean_deg: number;
+  spread_deg: number;
+  count: number;
+  used: number;
+  rejected: number;
+  duration_s: number;
+  drift_deg: number;
+  still: boolean;
+  enough: boolean;
+  seconds_needed: number;
+  up_sign: number | null;
+  u_scale: number;
+}
+
 export interface TwoFace {
   tilt_deg: number;
   bias_deg: number;

@@ -185,7 +185,7 @@ function Entering(props: EnteringProps) {
             <div class={name === main ? 'value-and-u' : ''}>
               <NumberEntry
                 id={`reading-${name}`}
-                label={name === 'value' ? t('reading.value') : t(`reading.axis.${name}`, { datum })}
+                label={name === 'value' ? t(quantity === 'azimuth' ? 'reading.value-azimuth' : 'reading.value') : t(`reading.axis.${name}`, { datum })}
                 text={field.text}
                 unit={sign}
                 unitSpoken={spoken}
@@ -251,14 +251,19 @@ function Entering(props: EnteringProps) {
         options={methods[quantity].map((m) => ({ value: m.name as string, label: methodName(m.name) }))}
         onChoose={setMethod}
       />
+      {quantity === 'azimuth' && <p>{t('reading.north')}</p>}
       <p class="quiet">{t('reading.usual', { u: usualDoubt(quantity, draft.method) })}</p>
       {quantity === 'position' && <p>{t('reading.middles')}</p>}
-      {quantity === 'azimuth' && <p>{t('reading.north')}</p>}
       {quantity === 'azimuth' && <BearingFrom job={props.job} mount={props.mount} compass={draft.method === 'compass'} />}
       {(quantity === 'skew' || quantity === 'tilt') && (
         <TwoFaces
           draftKey={draftKey}
-          onTake={(value, u) => change({ ...draft, u: shortest(u, 2), fields: { ...draft.fields, value: { text: shortest(Math.abs(value), 2), way: value < 0 ? 'less' : 'more' } } })}
+          quantity={quantity}
+          rod={directedOf(quantity, body) !== quantity}
+          onTake={(value, u, method) => {
+            const way = value < 0 ? ('less' as const) : ('more' as const);
+            change({ ...draft, u: shortest(u, 2), method: method ?? draft.method, fields: { ...draft.fields, value: { text: shortest(Math.abs(value), 2), way } } });
+          }}
         />
       )}
       {body.level_datum && (quantity === 'skew' || quantity === 'tilt') && <p>{t('reading.datum-flat', { surface: body.level_datum.surface, antenna: body.id })}</p>}

@@ -9,24 +9,41 @@ import { Message } from '../../parts/Message.tsx';
 import { say } from '../../words/aim.ts';
 import { figure } from '../../words/figures.ts';
 import { errorIn, Field, type Form, numberIn, told, useForm } from './form.tsx';
+import { PhoneFaces } from './PhoneFaces.tsx';
 import { ask } from './useAim.ts';
 
 export interface TwoFacesProps {
   /** Keeps what is being typed apart from other readings. */
   draftKey: string;
-  /** Takes value and standard uncertainty, degrees, into the reading. */
-  onTake: (value: number, u: number) => void;
+  quantity: 'tilt' | 'skew';
+  /** A rod instead of a panel: the phone's sensor is not offered where its signs are those of a back plate. */
+  rod: boolean;
+  /** Takes value and standard uncertainty, degrees, into the reading; by the phone's sensor where that read it. */
+  onTake: (value: number, u: number, method: 'phone' | null) => void;
 }
 
 const readings = ['1', '2', '3'] as const;
 
-export function TwoFaces({ draftKey, onTake }: TwoFacesProps) {
+export function TwoFaces({ draftKey, quantity, rod, onTake }: TwoFacesProps) {
   const [open, setOpen] = useState(false);
   const form = useForm(`two faces ${draftKey}`, {}, 'a1');
   return (
     <details class="more-figures" onToggle={(event) => setOpen(event.currentTarget.open)}>
       <summary>{say('faces.title')}</summary>
-      {open && form && <Faces form={form} onTake={onTake} />}
+      {open && form && (
+        <div class="stack">
+          {!rod && (
+            <section class="stack" aria-labelledby="live-title">
+              <h3 id="live-title">{say('live.title')}</h3>
+              <PhoneFaces quantity={quantity} onTake={(value, u) => onTake(value, u, 'phone')} />
+            </section>
+          )}
+          <section class="stack" aria-labelledby="typed-title">
+            <h3 id="typed-title">{say('faces.typed')}</h3>
+            <Faces form={form} onTake={(value, u) => onTake(value, u, null)} />
+          </section>
+        </div>
+      )}
     </details>
   );
 }
@@ -36,7 +53,7 @@ function readOn(form: Form, face: 'a' | 'b'): number[] {
   return readings.map((n) => numberIn(form, `${face}${n}`)).filter((x): x is number => x !== null);
 }
 
-function Faces({ form, onTake }: { form: Form; onTake: TwoFacesProps['onTake'] }) {
+function Faces({ form, onTake }: { form: Form; onTake: (value: number, u: number) => void }) {
   const a = readOn(form, 'a');
   const b = readOn(form, 'b');
   const asked = a.length > 0 && b.length > 0 ? { readings_a_deg: a, readings_b_deg: b } : null;

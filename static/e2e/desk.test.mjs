@@ -171,7 +171,13 @@ async function barriers(page) {
 
 test('a supervisor plans and issues a job; complaints, contrast, three themes, a session that ends', { timeout: 180_000 }, async (t) => {
   const server = await Crossplumb.open(t, temporary('desk-data'));
-  await server.people();
+  const { climberLink } = await server.people();
+  const accepted = await fetch(`${server.address}/api/session`, {
+    method: 'POST',
+    headers: { 'Content-Type': 'application/json', 'X-Crossplumb': '1' },
+    body: JSON.stringify({ invitation: invitationOf(climberLink), ...CLIMBER }),
+  });
+  assert.equal(accepted.status, 200);
   // axe is put into the page by the test: the page's own policy would not let a script in.
   const context = await openProfile(t, temporary('desk'), DESK, { bypassCSP: true });
   const page = await context.newPage();
@@ -206,7 +212,10 @@ test('a supervisor plans and issues a job; complaints, contrast, three themes, a
   await picture(page, 'desk-plan');
   await page.getByLabel('Site').fill('Lowe Stack');
   await page.getByLabel('What is done there').fill('crossed pair to the ferry');
-  await page.getByLabel('Crew').fill(CREW);
+  await page.getByLabel('Crew').fill('a crew that is not');
+  await page.getByText('nobody is in a crew of this name yet').waitFor();
+  await page.getByLabel('Crew').fill(` ${CREW.toUpperCase()}`); // goes to the crew that is there: a job reaches the phones of exactly its name
+  await page.getByText('nobody is in a crew of this name yet').waitFor({ state: 'detached' });
   await page.getByLabel('Name of the mount').fill('west');
   await page.reload(); // what was typed is kept
   await page.getByText('If it hangs exactly as planned').waitFor();

@@ -6,7 +6,7 @@ import { Message } from '../parts/Message';
 import type { Person, Role, User } from '../types';
 import * as api from './api';
 import { deskTime } from './format';
-import { crewName } from './names';
+import { crewAsKnown, crewName } from './names';
 import { t } from './words';
 
 export function PeoplePage({ user }: { user: User }) {
@@ -71,7 +71,7 @@ function InviteForm({ crews }: { crews: string[] }) {
 
   const submit = (event: Event) => {
     event.preventDefault();
-    const name = crew.trim();
+    const name = crewAsKnown(crew, crews);
     if (role === 'climber' && name === '') return setComplaint(t('desk.invite.crew-missing'));
     setBusy(true);
     setComplaint(null);

@@ -1,6 +1,6 @@
 // Issuing a job: the visit, then each mount with its sheet. Nothing is sent before every mount can be judged.
 
-import { useLayoutEffect, useState } from 'preact/hooks';
+import { useEffect, useLayoutEffect, useState } from 'preact/hooks';
 import { Button } from '../parts/Button';
 import { Message } from '../parts/Message';
 import { readNumber } from '../parts/number';
@@ -8,7 +8,7 @@ import type { JobSummary } from '../types';
 import * as api from './api';
 import { dropDraft, type JobDraft, keepDraft, keptDraft, newDraft, newMount } from './draft';
 import { MountForm } from './MountForm';
-import { crewName } from './names';
+import { crewAsKnown, crewName } from './names';
 import { hrefOf } from './route';
 import { sheetIn } from './sheets';
 import { TextField } from './TextField';
@@ -35,11 +35,22 @@ export function PlanPage({ jobs, onIssued }: Props) {
     if (issued === null) keepDraft(draft);
   }, [draft, issued]);
 
+  // Crews that somebody is in; null where that is not known.
+  const [manned, setManned] = useState<string[] | null>(null);
+  useEffect(() => {
+    api.people().then(
+      (list) => setManned([...new Set(list.flatMap((p) => (p.role === 'climber' && p.crew ? [p.crew] : [])))]),
+      () => setManned(null),
+    );
+  }, []);
+  const crews = [...new Set([...(manned ?? []), ...(jobs ?? []).map((j) => j.crew)])].sort();
+  const crew = crewAsKnown(draft.crew, [...(manned ?? []), ...crews]);
+
   if (issued !== null) {
     return (
       <div class="page plan">
         <h1>{t('desk.issued', { site: issued.site.trim() })}</h1>
-        <p>{t('desk.issued.what', { crew: crewName(issued.crew.trim()) })}</p>
+        <p>{t('desk.issued.what', { crew: crewName(issued.crew) })}</p>
         <p class="buttons">
           <Button href={hrefOf({ page: 'queue', tab: 'issued', job: issued.id, mount: null })}>{t('desk.issued.open')}</Button>
           <Button
@@ -90,7 +101,7 @@ export function PlanPage({ jobs, onIssued }: Props) {
         id: draft.id,
         site: draft.site.trim(),
         title: draft.title.trim(),
-        crew: draft.crew.trim(),
+        crew,
         visit_on: orNull(draft.visit_on),
         access: orNull(draft.access),
         emergency: orNull(draft.emergency),
@@ -106,7 +117,7 @@ export function PlanPage({ jobs, onIssued }: Props) {
       .then(
         () => {
           dropDraft();
-          setIssued(draft);
+          setIssued({ ...draft, crew });
           onIssued();
         },
         (err: unknown) =>
@@ -119,14 +130,15 @@ export function PlanPage({ jobs, onIssued }: Props) {
       .finally(() => setBusy(false));
   };
 
-  const known = (part: 'site' | 'crew') => [...new Set((jobs ?? []).map((j) => j[part]))].sort();
+  const sites = [...new Set((jobs ?? []).map((j) => j.site))].sort();
+  const nobody = manned !== null && crew !== '' && !manned.includes(crew) ? t('desk.plan.crew-empty') : null;
   return (
     <form class="page plan" onSubmit={submit} noValidate>
       <h1>{t('desk.plan')}</h1>
       <div class="visit-form">
-        <TextField id="plan-site" label={t('desk.plan.site')} text={draft.site} onText={set('site')} error={missing('site')} known={known('site')} />
+        <TextField id="plan-site" label={t('desk.plan.site')} text={draft.site} onText={set('site')} error={missing('site')} known={sites} />
         <TextField id="plan-title" label={t('desk.plan.title')} hint={t('desk.plan.title-hint')} text={draft.title} onText={set('title')} error={missing('title')} />
-        <TextField id="plan-crew" label={t('desk.plan.crew')} text={draft.crew} onText={set('crew')} error={missing('crew')} known={known('crew')} />
+        <TextField id="plan-crew" label={t('desk.plan.crew')} hint={nobody} text={draft.crew} onText={set('crew')} error={missing('crew')} known={crews} />
         <TextField id="plan-visit" label={t('desk.plan.visit')} type="date" text={draft.visit_on} onText={set('visit_on')} error={fromServer('visit_on')} />
         <TextField id="plan-lat" label={t('desk.plan.lat')} hint={t('desk.plan.lat-hint')} text={draft.lat} onText={set('lat')} error={lat === 'wrong' ? t('desk.plan.lat-wrong') : half && draft.lat.trim() === '' ? t('desk.plan.half') : fromServer('lat_deg')} numeric />
         <TextField id="plan-lon" label={t('desk.plan.lon')} hint={t('desk.plan.lon-hint')} text={draft.lon} onText={set('lon')} error={lon === 'wrong' ? t('desk.plan.lon-wrong') : half && draft.lon.trim() === '' ? t('desk.plan.half') : fromServer('lon_deg')} numeric />

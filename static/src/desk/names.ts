@@ -14,3 +14,9 @@ export function whatOf(job: JobSummary): string {
   const rest = job.title.slice(job.site.length).replace(/^[\s,:;·–-]+/, '');
   return rest === '' ? job.title : rest;
 }
+
+/** The crew as it is already written elsewhere, where only capitals or spaces differ: a job goes to the phones of exactly this name. */
+export function crewAsKnown(typed: string, known: readonly string[]): string {
+  const same = (name: string) => name.trim().replace(/\s+/g, ' ').toLocaleLowerCase();
+  return known.find((crew) => same(crew) === same(typed)) ?? typed.trim().replace(/\s+/g, ' ');
+}

@@ -256,6 +256,7 @@ export const deskEn = {
   'desk.plan.title': 'What is done there',
   'desk.plan.title-hint': 'one line, for the list: “link to Long Skerry”',
   'desk.plan.crew': 'Crew',
+  'desk.plan.crew-empty': 'nobody is in a crew of this name yet: see “People”',
   'desk.plan.visit': 'Day of the visit',
   'desk.plan.lat': 'Latitude',
   'desk.plan.lat-hint': 'degrees, north is positive',

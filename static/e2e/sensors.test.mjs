@@ -1,7 +1,7 @@
 // Tilt and skew by the phone's sensor: traces of a simulator (calc/peak/gravity_test.go) come as motion events through the
 // code that listens to a live sensor; a phone that denies, lacks or silences its sensor says so and typing goes on.
 import assert from 'node:assert/strict';
-import { readFileSync } from 'node:fs';
+import { readdirSync, readFileSync } from 'node:fs';
 import path from 'node:path';
 import { test } from 'node:test';
 import { fileURLToPath } from 'node:url';
@@ -96,9 +96,6 @@ test('tilt and skew by the phone, two faces, and phones that have no sensor to g
   await play(page, tilt.a.slice(0, 60));
   await page.getByText(/does not lie still on its back/).waitFor();
   assert.equal(await page.getByText('Face A', { exact: true }).count(), 0, 'an upright phone tells no sign');
-  await page.reload();
-  await page.getByText('By two faces').click();
-  await press(page, 'Start sensors');
   await press(page, 'It lies screen up');
   // Three seconds of lying: the first goes to the hand.
   await play(page, [...tilt.face_up, ...tilt.face_up.map(([s, ...a]) => [s + 2.1, ...a])]);
@@ -206,4 +203,12 @@ test('skew on the back of the plate, by a phone with the sign of the specificati
   assert.ok(Math.abs(value - skew.skew_deg) <= 2 * u, `${value} ± ${u}, truth ${skew.skew_deg}`);
   await press(page, 'Take into the reading');
   assert.ok(await page.getByRole('radio', { name: 'clockwise', exact: true }).isChecked());
+});
+
+test('only the sensors folder touches the motion interface', () => {
+  const source = path.join(traces, '..', '..', 'static', 'src');
+  const touching = readdirSync(source, { recursive: true })
+    .filter((name) => /\.tsx?$/.test(name) && /devicemotion|deviceorientation|DeviceMotionEvent|DeviceOrientationEvent/.test(readFileSync(path.join(source, name), 'utf8')))
+    .map((name) => name.split(path.sep).join('/'));
+  assert.deepEqual(touching, ['sensors/motion.ts']);
 });

@@ -418,6 +418,7 @@ export const aimEn = {
   'live.sways': 'It sways: hold on until the swings have averaged out.',
   'live.shaken': 'Shaky: press it on and keep your hand still, or wait for the gust to pass.',
   'live.progress': 'How much of this face is read',
+  'live.anew': 'Begin this face anew',
   'live.take-face': 'Take this face',
   'live.taken': 'Taken: {mean}°, {n} samples in {s} s.',
   'live.answer': 'Without the phone’s error',

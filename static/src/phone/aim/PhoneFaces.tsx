@@ -91,6 +91,8 @@ export function PhoneFaces({ quantity, onTake }: PhoneFacesProps) {
         if (!ended) {
           setLive(null);
           setTrouble(problemOf(error).message);
+          // What lay wrong is lain down anew and pressed again; a face goes on, and drops what was wrong in it.
+          if (running === 'face_up') setRunning(null);
         }
       } finally {
         asking = false;
@@ -149,7 +151,7 @@ export function PhoneFaces({ quantity, onTake }: PhoneFacesProps) {
               <legend class="field-label">{say(`live.${face}`)}</legend>
               {!taken && <p>{say(`live.lay.${quantity}.${face}`)}</p>}
               {running === face ? (
-                <Holding live={live} onTake={takeFace} />
+                <Holding live={live} onTake={takeFace} onAnew={() => begin(face)} />
               ) : (
                 <>
                   {taken && <p class="figure">{say('live.taken', { mean: figure(taken.held.mean_deg, 1), n: taken.held.used, s: Math.round(taken.held.duration_s) })}</p>}
@@ -166,7 +168,7 @@ export function PhoneFaces({ quantity, onTake }: PhoneFacesProps) {
   );
 }
 
-function Holding({ live, onTake }: { live: FaceHeld | null; onTake: () => void }) {
+function Holding({ live, onTake, onAnew }: { live: FaceHeld | null; onTake: () => void; onAnew: () => void }) {
   if (!live) return <p role="status">{say('live.settle')}</p>;
   const shaken = live.rejected > SHAKEN * (live.rejected + live.used);
   const done = Math.min(1, live.duration_s / live.seconds_needed);
@@ -188,6 +190,9 @@ function Holding({ live, onTake }: { live: FaceHeld | null; onTake: () => void }
       </svg>
       <Button wide disabled={!live.enough} onPress={onTake}>
         {say('live.take-face')}
+      </Button>
+      <Button kind="quiet" onPress={onAnew}>
+        {say('live.anew')}
       </Button>
     </>
   );

@@ -126,12 +126,14 @@ export function HandIn({ id }: { id: string }) {
             </li>
           ))}
         </ul>
-        <p>{t('hand-in.decide')}</p>
+        {job.stage !== 'signed off' && <p>{t('hand-in.decide')}</p>}
       </section>
-      <div class="field">
-        <label for="hand-in-remark">{t('hand-in.remark')}</label>
-        <textarea id="hand-in-remark" class="text-entry" value={remark} onInput={(event) => type(event.currentTarget.value)} />
-      </div>
+      {job.stage !== 'signed off' && (
+        <div class="field">
+          <label for="hand-in-remark">{t('hand-in.remark')}</label>
+          <textarea id="hand-in-remark" class="text-entry" value={remark} onInput={(event) => type(event.currentTarget.value)} />
+        </div>
+      )}
     </Page>
   );
 }

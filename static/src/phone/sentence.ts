@@ -79,7 +79,7 @@ function doubtReason(verdict: Verdict, sheet: Sheet): string {
     const outcome = verdict.limits.find((l) => l.name === limit);
     if (!limit || !outcome) return t('reason.doubt-bare');
     if (outcome.value === null) return t('reason.unjudged', { limit: limitTitle(limit) });
-    return t('reason.doubt-limit', { limit: limitTitle(limit), value: limitDoubted(limit, outcome.value, outcome.u) });
+    return t(verdict.far_from_plan ? 'reason.doubt-far' : 'reason.doubt-limit', { limit: limitTitle(limit), value: limitDoubted(limit, outcome.value, outcome.u) });
   }
   const sign = unitSign(deciding.unit);
   const params = {

@@ -56,10 +56,11 @@ tools:
 	.ci/tools
 
 ## bench: ours beside a yardstick in numpy and scipy (Debian: python3-numpy python3-scipy), in the same run
-bench:
+bench: tools build
 	@/usr/bin/python3 -c 'import numpy, scipy' || { echo "make bench needs python3-numpy and python3-scipy (Debian packages)" >&2; exit 1; }
 	go test -run XXX -bench . -benchmem -count 3 ./calc/verdict ./calc/stream ./calc/scatter ./calc/fault
 	/usr/bin/python3 testdata/yardstick/yardstick.py
+	CROSSPLUMB_BIN=$$(pwd)/$(BIN) node --test static/bench/verdict.mjs
 	go test -tags $(TAGS) -run XXX -bench . ./db
 
 ## calibrate: ten thousand simulated mounts with known truth, judged; prints the table (an hour or so)

@@ -76,7 +76,7 @@ export function Candidates({ ranking }: { ranking: FaultRanking }) {
   return (
     <>
       {ranking.none_fits && <Message tone="warn">{say('fault.none-fits')}</Message>}
-      {first && shares.length > 0 && <p>{say('fault.share', { names: [first, ...shares].map(candidateName).join(', ') })}</p>}
+      {first && shares.length > 0 && <p>{sharedOdds([first, ...shares])}</p>}
       <ol class="candidates">
         {shown.map((c) => (
           <li key={c.name}>
@@ -102,6 +102,13 @@ export function Candidates({ ranking }: { ranking: FaultRanking }) {
       ))}
     </>
   );
+}
+
+/** What cannot be told apart. That nothing stands out is no fault among others: then the figures fit a sound link as well. */
+function sharedOdds(alike: readonly Candidate[]): string {
+  const faults = alike.filter((c) => c.name !== 'nothing_stands_out');
+  const names = faults.map(candidateName).join(', ');
+  return say(faults.length < alike.length ? 'fault.share-sound' : 'fault.share', { names });
 }
 
 function Predicts({ candidate }: { candidate: Candidate }) {

@@ -72,6 +72,11 @@ export function SignIn({ invitation }: { invitation: string | null }) {
         </div>
         <div class="field">
           <label for="enter-with">{t('enter.passphrase')}</label>
+          {fresh && (
+            <span class="quiet" id="enter-advice">
+              {t('enter.advice')}
+            </span>
+          )}
           <input
             id="enter-with"
             class="text-entry"
@@ -81,7 +86,7 @@ export function SignIn({ invitation }: { invitation: string | null }) {
             spellcheck={false}
             value={passphrase}
             aria-invalid={wrong?.where === 'passphrase' ? 'true' : undefined}
-            aria-describedby={described('passphrase')}
+            aria-describedby={[fresh ? 'enter-advice' : undefined, described('passphrase')].filter(Boolean).join(' ') || undefined}
             onInput={(event) => setPassphrase(event.currentTarget.value)}
           />
           {message('passphrase')}

@@ -168,8 +168,8 @@ export const aimEn = {
 
   // ---- Ground ----
   'ground.title': 'The ground it covers',
-  'ground.height': 'Height above that ground',
-  'ground.height-hint': 'Of the antennas above the ground that they cover',
+  'ground.height': 'Height above the ground that it covers',
+  'ground.height-hint': 'Of the antennas, above the ground in the beam: not above the foot of this mast where that lies higher or lower',
   'ground.height-plan': 'The plan says {height}',
   'ground.of': 'Antenna {antenna}',
   'ground.inner': 'Inner edge',
@@ -308,6 +308,7 @@ export const aimEn = {
   'fault.odds': '{percent} %',
   'fault.next': 'Check next:',
   'fault.predicts': 'What it predicts',
+  'fault.share-sound': 'These figures fit a sound link as well as: {names}. They share the odds.',
   'fault.share': 'These figures cannot tell apart: {names}. They share the odds.',
   'fault.none-fits': 'None of these fits the figures well. Read them again, at both ends.',
   'fault.of-port': '{name}, port {port}',
@@ -363,7 +364,8 @@ export const aimEn = {
   'desk.survey.datum-hint': 'The same for every height here',
   'desk.survey.k': 'Bend of the ray, k',
   'desk.survey.k-hint': 'Empty: 4/3',
-  'desk.survey.ground-hint': 'For sectors: gives the edges',
+  'desk.survey.ground': 'Height above the ground covered',
+  'desk.survey.ground-hint': 'For a sector: of the antennas here, above the ground that their beams cover, not above the foot of the mast where that lies higher or lower. Gives the edges',
   'desk.survey.gives': 'The coordinates give: bearing {bearing}, elevation {elevation}, distance {distance}.',
   'desk.survey.take': 'Take these into the path',
   'desk.survey.no-obstacles': 'None listed. The crew can add what it sees.',

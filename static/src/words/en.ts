@@ -114,6 +114,7 @@ export const en = {
   'enter.accept': 'Accept the invitation',
   'enter.name-missing': 'Type your name.',
   'enter.passphrase-missing': 'Type your passphrase.',
+  'enter.advice': 'Fifteen characters or more are best, a few words for example. At least ten.',
   'enter.too-short': 'At least 10 characters; several words are best.',
   'enter.refused': 'Name or passphrase is not right.',
   'enter.no-coverage': 'No answer from the server. Signing in needs coverage.',

@@ -5,7 +5,7 @@ import { test } from 'node:test';
 import { compile } from './compiled.mjs';
 
 const openWindow = compile();
-const page = await openWindow('parts/number', 'phone/entry', 'phone/route', 'phone/log', 'words/figures');
+const page = await openWindow('parts/number', 'phone/entry', 'phone/route', 'phone/log', 'phone/steps', 'words/figures');
 
 const draft = (value, way = null, u = '0.3') => ({ fields: { value: { text: value, way } }, u, method: 'level', instrument: '', more: false });
 const place = (axes, u = '3') => ({
@@ -157,4 +157,46 @@ test('readings stand until taken back, and as left only since the bolt was last 
   assert.deepEqual(values(log, 'as_left'), [0.4], 'what the server set apart counts for nobody');
   assert.equal(page.lastTurn(log, 'm1', 'A', 'skew'), '2026-11-30T09:05:00+01:00');
   assert.deepEqual(page.forFold(log, 'm1').map((e) => e.kind).filter((k) => k === 'bolt.moved').length, 2);
+});
+
+const pathOf = (antennas, entries) => {
+  const mount = { id: 'm1', name: 'M', sheet: { near: { antennas } } };
+  const job = { summary: { id: 'j' }, stage: 'issued', plan: { mounts: [mount] } };
+  const log = entries.map(([kind, body], i) => ({ whereabouts: 'waiting', entry: { id: `e${i}`, device: 'd', device_seq: i + 1, mount: 'm1', kind, body, at: `2026-06-01T10:00:${10 + i}Z` } }));
+  return page.stepsOf(job, log, 'm1').find((step) => step.key === 'aim');
+};
+const panel = (id) => ({ id, pattern: { kind: 'sector' }, azimuth: {}, elements: [] });
+const asFound = ['reading.taken', { phase: 'as_found', antenna: 'A', quantity: 'azimuth', reading: { value: 47, method: 'sight' }, typed: '47' }];
+const sight = (antenna, reference) => ['sight.taken', { antenna, phase: 'as_left', reference }];
+
+test('the square "aim" is filled by aiming, not by an azimuth that was merely read', () => {
+  const done = (entries, antennas = [panel('A')]) => pathOf(antennas, entries).done;
+  assert.equal(done([]), false);
+  assert.equal(done([asFound]), false, 'read as found');
+  for (const reference of ['sun', 'landmark', 'compass']) assert.equal(done([sight('A', reference)]), true, reference);
+  assert.equal(done([['level.stepped', { antenna: 'A' }]]), false, 'a search under way');
+  assert.equal(done([['peak.fitted', { antenna: 'A' }]]), true, 'a peak kept');
+  assert.equal(done([['obstacle.noted', {}]]), true, 'the path looked after');
+  assert.equal(done([['obstacle.noted', {}], ['reading.withdrawn', { withdraws: 'e0' }]]), false, 'and taken back');
+  assert.equal(done([sight('A', 'sun'), asFound, ['reading.withdrawn', { withdraws: 'e1' }]]), false, 'the sight’s reading taken back');
+  assert.equal(done([sight('A', 'compass'), asFound, ['reading.withdrawn', { withdraws: 'e1' }]]), true, 'another reading taken back');
+  assert.equal(done([sight('A', 'sun'), ['bolt.moved', { antenna: 'A', quantity: 'azimuth' }]]), false, 'turned since');
+  assert.equal(done([sight('A', 'sun')], [panel('A'), panel('B')]), false, 'one of two');
+  assert.equal(done([sight('A', 'sun'), sight('B', 'sun')], [panel('A'), panel('B')]), true);
+});
+
+test('a rod has nothing to aim: neither done nor open', () => {
+  const rod = { id: 'A', pattern: { kind: 'omni' }, azimuth: {}, elements: [] };
+  for (const entries of [[], [asFound]]) {
+    const step = pathOf([rod], entries);
+    assert.deepEqual([step.done, step.needless], [false, true]);
+  }
+  assert.equal(pathOf([rod, panel('B')], []).needless, false);
+});
+
+test('a distance is shown with the decimals that were read', () => {
+  for (const [values, decimals] of [[[62.5, 0, 0], 1], [[62], 0], [[], 0], [[0.1 + 0.2], 1], [[-12.25, 3], 2], [[1 / 3], 3]]) {
+    assert.equal(page.decimalsIn(values), decimals, String(values));
+  }
+  assert.equal(page.shortest(62.5, page.decimalsIn([62.5])), '62.5');
 });

@@ -6,7 +6,7 @@ import { MountDrawing } from '../draw/MountDrawing.tsx';
 import { Button } from '../parts/Button.tsx';
 import { addEntry } from '../store/index.ts';
 import type { Antenna, LoggedEntry, Phase, PlannedMount, Quantity, Reading, States } from '../types.ts';
-import { decimalsFor, figure, shortest } from '../words/figures.ts';
+import { decimalsFor, decimalsIn, figure, shortest } from '../words/figures.ts';
 import { t } from '../words/words.ts';
 import { DeskRemark } from './DeskRemark.tsx';
 import { Gone } from './Gone.tsx';
@@ -198,7 +198,7 @@ function Schedule(props: ScheduleProps) {
           const off = drawn?.off.includes(quantity) ?? false;
           const own = standing(log, mount.id, phase, antenna.id, quantity).length;
           const turned = phase === 'as_left' && own === 0 && lastTurn(log, mount.id, antenna.id, quantity) !== null;
-          const value = count > 0 ? valueOf(quantity, antenna, drawn, props.doubts) : null;
+          const value = count > 0 ? valueOf(quantity, antenna, drawn, props.doubts, decimalsRead(shown, quantity, phase)) : null;
           return (
             <li key={quantity}>
               <a href={hrefOfReading(quantity)} class={`schedule-row${off ? ' off' : ''}${value ? '' : ' unread'}`}>
@@ -237,24 +237,32 @@ function readingsHere(shown: Antenna, quantity: Quantity, phase: Phase): number 
   return list ? (Array.isArray(list) ? list.length : 1) : 0;
 }
 
+/** Decimals of the finest reading here: what was read as 62.5 is not shown as 63. */
+function decimalsRead(shown: Antenna, quantity: Quantity, phase: Phase): number {
+  const list = (statesOf(shown, quantity) as States<Reading> | null | undefined)?.[phase];
+  const readings: readonly Reading[] = list ? (Array.isArray(list) ? list : [list]) : [];
+  const values = readings.flatMap(({ value }) => (typeof value === 'number' ? [value] : axes.map((axis) => value[axis] ?? 0)));
+  return decimalsIn(values);
+}
+
 interface ShownValue {
   number: string;
   way: string;
   u: string;
 }
 
-/** What calc pooled from the readings: value, direction, doubt. */
-function valueOf(quantity: Quantity, antenna: Antenna, drawn: DrawnAntenna | undefined, doubts: PlacedDoubts | null): ShownValue | null {
+/** What calc pooled from the readings: value with the decimals that were read, direction, doubt. */
+function valueOf(quantity: Quantity, antenna: Antenna, drawn: DrawnAntenna | undefined, doubts: PlacedDoubts | null, read: number): ShownValue | null {
   if (!drawn || !doubts) return null;
   if (quantity === 'position') {
     const axis = [...axes].sort((a, b) => Math.abs(along(drawn.planned, b)) - Math.abs(along(drawn.planned, a)))[0] ?? 'right';
     const mm = along(drawn.placed, axis);
     const u = doubts[`u_${axis}_mm`];
-    return { number: `${shortest(Math.abs(mm), 0)} mm`, way: wayName(axis, mm < 0 ? 'less' : 'more'), u: u ? `\u00b1 ${figure(u, decimalsFor(u))} mm` : '' };
+    return { number: `${shortest(Math.abs(mm), read)} mm`, way: wayName(axis, mm < 0 ? 'less' : 'more'), u: u ? `\u00b1 ${figure(u, decimalsFor(u))} mm` : '' };
   }
   const value = quantity === 'skew' ? drawn.placed.skew_deg : quantity === 'tilt' ? drawn.placed.tilt_deg : drawn.placed.azimuth_deg;
   const u = quantity === 'skew' ? doubts.u_skew_deg : quantity === 'tilt' ? doubts.u_tilt_deg : doubts.u_azimuth_deg;
-  const number = `${shortest(Math.abs(value), 1)}°`;
+  const number = `${shortest(Math.abs(value), Math.max(1, read))}°`;
   const way = quantity === 'azimuth' || number === '0°' ? '' : wayName(directedOf(quantity, antenna), value < 0 ? 'less' : 'more');
   return { number, way, u: u ? `\u00b1 ${figure(u, Math.min(2, decimalsFor(u)))}°` : '' };
 }

@@ -4,7 +4,7 @@ import type { LoggedEntry, Phase, PhoneJob, PlannedMount, Quantity, Sheet } from
 import { cautions, type Caution } from '../words/cautions.ts';
 import { lastTurn, saidOf, standing } from './log.ts';
 import { hrefOf, type MountStep, mountSteps } from './route.ts';
-import { aimDone, figuresDone } from './aim/done.ts';
+import { aimDone, aimedOf, figuresDone } from './aim/done.ts';
 
 export interface Wanted {
   antenna: string;
@@ -51,6 +51,8 @@ export interface Step {
   key: 'before' | MountStep | 'aim' | 'figures' | 'hand-in';
   href: string;
   done: boolean;
+  /** There is nothing to do in it. */
+  needless?: boolean;
 }
 
 /** The path, for one mount or (null) for the whole job: then a step leads to the first mount where it is open. */
@@ -65,9 +67,11 @@ export function stepsOf(job: PhoneJob, log: readonly LoggedEntry[], mountId: str
     if (!target) continue;
     steps.push({ key: step, href: hrefOf({ page: 'mount', job: id, mount: target.id, step }), done: open === undefined });
     if (step !== 'adjust') continue;
-    for (const [page, isDone] of [['aim', aimDone], ['figures', figuresDone]] as const) {
-      const unaimed = asked.find((m) => !isDone(log, m));
-      steps.push({ key: page, href: hrefOf({ page, job: id, mount: (unaimed ?? target).id }), done: unaimed === undefined });
+    const aimed = asked.filter((m) => aimedOf(m).length > 0);
+    for (const [page, isDone, wanting] of [['aim', aimDone, aimed], ['figures', figuresDone, asked]] as const) {
+      const undone = wanting.find((m) => !isDone(log, m));
+      const needless = wanting.length === 0;
+      steps.push({ key: page, href: hrefOf({ page, job: id, mount: (undone ?? target).id }), done: undone === undefined && !needless, needless });
     }
   }
   const handedIn = job.stage === 'handed in' || job.stage === 'signed off';

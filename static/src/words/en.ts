@@ -78,6 +78,7 @@ export const en = {
   'path.name': 'Path of the visit',
   'path.done': 'done',
   'path.open': 'open',
+  'path.needless': 'not needed',
 
   // ---- Everywhere ----
   'foot.caution':

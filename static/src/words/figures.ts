@@ -26,6 +26,11 @@ export function shortest(value: number, most: number): string {
   return /[.,]/.test(text) ? text.replace(/0+$/, '').replace(/[.,]$/, '') : text;
 }
 
+/** The most decimals that any of these numbers has as it was typed, three at most. */
+export function decimalsIn(values: readonly number[]): number {
+  return Math.max(0, ...values.map((value) => (/\.(\d+)$/.exec(String(Number(value.toFixed(3))))?.[1] ?? '').length));
+}
+
 /**
  * Decimals that a standard uncertainty deserves: one significant figure, two when it begins with 1 (so that rounding
  * never moves it by more than a quarter; JCGM 100:2008, 7.2.6 has two at most, from memory). Not more than three decimals.

@@ -58,10 +58,10 @@ tools:
 ## bench: ours beside a yardstick in numpy and scipy (Debian: python3-numpy python3-scipy), in the same run
 bench: tools build
 	@/usr/bin/python3 -c 'import numpy, scipy' || { echo "make bench needs python3-numpy and python3-scipy (Debian packages)" >&2; exit 1; }
-	go test -run XXX -bench . -benchmem -count 3 ./calc/verdict ./calc/stream ./calc/scatter ./calc/fault
+	go test -run '^$$' -bench . -benchmem -count 3 ./calc/verdict ./calc/stream ./calc/scatter ./calc/fault
 	/usr/bin/python3 testdata/yardstick/yardstick.py
 	CROSSPLUMB_BIN=$$(pwd)/$(BIN) node --test static/bench/verdict.mjs
-	go test -tags $(TAGS) -run XXX -bench . ./db
+	go test -tags $(TAGS) -run '^$$' -bench . ./db
 
 ## calibrate: ten thousand simulated mounts with known truth, judged; prints the table (an hour or so)
 calibrate:
@@ -71,9 +71,9 @@ calibrate:
 FUZZTIME ?= 30m
 fuzz:
 	for target in $$(grep -ho '^func Fuzz[A-Za-z]*' calc/wire/*_test.go | cut -c6-); do \
-	  echo "== $$target"; go test ./calc/wire -run XXX -fuzz "^$$target$$" -fuzztime $(FUZZTIME) -timeout 24h; done
-	go test ./calc/codec -run XXX -fuzz '^FuzzParse$$' -fuzztime $(FUZZTIME) -timeout 24h
-	go test -tags $(TAGS) ./server -run XXX -fuzz '^FuzzReadEntry$$' -fuzztime $(FUZZTIME) -timeout 24h
+	  echo "== $$target"; go test ./calc/wire -run '^$$' -fuzz "^$$target$$" -fuzztime $(FUZZTIME) -timeout 24h; done
+	go test ./calc/codec -run '^$$' -fuzz '^FuzzParse$$' -fuzztime $(FUZZTIME) -timeout 24h
+	go test -tags $(TAGS) ./server -run '^$$' -fuzz '^FuzzReadEntry$$' -fuzztime $(FUZZTIME) -timeout 24h
 
 ## vuln: known vulnerabilities in what we call
 vuln:

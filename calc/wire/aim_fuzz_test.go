@@ -30,7 +30,7 @@ func fuzz(f *testing.F, seeds map[string][]string) {
 	}
 	f.Fuzz(func(t *testing.T, op string, in []byte) {
 		if _, known := seeds[op]; !known {
-			t.Skip("not an operation of this topic")
+			return // another topic's target asks that one
 		}
 		sound(t, op, in)
 	})

@@ -147,3 +147,14 @@ func (s *Store) Demo(ctx context.Context) (string, error) {
 	}
 	return state, err
 }
+
+// DemoMark reads what Demo does from a file whose schema need not be this program's: the database of an older or a newer
+// version can still say whether it is a demo. The file is not changed.
+func DemoMark(ctx context.Context, path string) (string, error) {
+	s, err := openToRead(path)
+	if err != nil {
+		return "", err
+	}
+	defer s.read.Close()
+	return s.Demo(ctx)
+}

@@ -47,7 +47,7 @@ func runDemo(ctx context.Context, args []string, io streams) error {
 		}
 	}
 	err = furnish(ctx, path, time.Now())
-	if errors.Is(err, errHalfFurnished) || folder.own && (errors.Is(err, db.ErrOtherText) || errors.Is(err, db.ErrNewer)) {
+	if errors.Is(err, errHalfFurnished) || folder.own && errors.Is(err, errOtherDemo) {
 		// A start that was killed, or the demo of another build in the folder that is the demo's alone.
 		if err := removeDatabase(path); err != nil {
 			return err
@@ -113,11 +113,30 @@ func lockedDemo(place demoPlace) (demoPlace, error) {
 // errHalfFurnished is a demo whose first start was killed.
 var errHalfFurnished = errors.New("the demo was not furnished to the end; start it with --fresh")
 
+// errOtherDemo is a demo that another version of this program made. It is not furnished over without being asked: somebody
+// named the folder, and may want what was done in it.
+var errOtherDemo = errors.New("holds a demo made by another version of crossplumb, which this one cannot go on with; start it with --fresh to furnish it anew, or take another folder")
+
+func otherDemo(path string) error {
+	return fmt.Errorf("%s %w", filepath.Dir(path), errOtherDemo)
+}
+
+// openDemo opens the database; one that another version wrote and marked as a demo is said to be that.
+func openDemo(ctx context.Context, path string, now func() time.Time) (*db.Store, error) {
+	store, err := db.Open(ctx, db.Config{Path: path, Now: now, App: "crossplumb " + version})
+	if errors.Is(err, db.ErrOtherText) || errors.Is(err, db.ErrNewer) {
+		if marked, asked := db.DemoMark(ctx, path); asked == nil && marked != "" {
+			return nil, otherDemo(path)
+		}
+	}
+	return store, err
+}
+
 // furnish fills an empty database with the invented company, leaves one that is furnished as it is, and refuses one
 // that holds anything else.
 func furnish(ctx context.Context, path string, today time.Time) error {
 	clock := &demoClock{at: today}
-	store, err := db.Open(ctx, db.Config{Path: path, Now: clock.now, App: "crossplumb " + version})
+	store, err := openDemo(ctx, path, clock.now)
 	if err != nil {
 		return err
 	}
@@ -128,6 +147,8 @@ func furnish(ctx context.Context, path string, today time.Time) error {
 		return err
 	case state == db.DemoBegun:
 		return errHalfFurnished
+	case state != "":
+		return otherDemo(path)
 	}
 	somebody, err := store.Anybody(ctx)
 	if err != nil {
@@ -155,12 +176,9 @@ func removeDemo(ctx context.Context, path string) error {
 	if _, err := os.Stat(path); errors.Is(err, os.ErrNotExist) {
 		return nil
 	}
-	store, err := db.Open(ctx, db.Config{Path: path, App: "crossplumb " + version})
+	// Without opening it as this version would: the demo of another one goes as well.
+	state, err := db.DemoMark(ctx, path)
 	if err != nil {
-		return err
-	}
-	state, err := store.Demo(ctx)
-	if err := errors.Join(err, store.Close()); err != nil {
 		return err
 	}
 	if state == "" {

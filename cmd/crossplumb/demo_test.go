@@ -1,9 +1,13 @@
 package main
 
 import (
+	"database/sql"
 	"encoding/json/jsontext"
 	json "encoding/json/v2"
+	"errors"
+	"os"
 	"path/filepath"
+	"strings"
 	"testing"
 	"time"
 
@@ -241,5 +245,62 @@ func TestTheDemoIsTheSameEachTime(t *testing.T) {
 		if json.Unmarshal([]byte(first[i]), &a) != nil || json.Unmarshal([]byte(second[i]), &b) != nil || first[i] != second[i] {
 			t.Errorf("reading %d: %s and %s", i, first[i], second[i])
 		}
+	}
+}
+
+// The demo of another version is called what it is, kept until --fresh is said, and then taken away; a real database never is.
+func TestTheDemoOfAnotherVersionIsNamed(t *testing.T) {
+	for name, alter := range map[string]string{
+		"a mark that this version does not have": "UPDATE meta SET value = 'yes' WHERE key = 'demo'",
+		"a schema with other text":               "UPDATE migrations SET sum = 'other' WHERE number = 1",
+		"a newer schema":                         "INSERT INTO migrations (number, name, sum, applied_ms) VALUES (99, 'later', 'x', 0)",
+	} {
+		t.Run(name, func(t *testing.T) {
+			path := filepath.Join(t.TempDir(), databaseName)
+			store, err := db.Open(t.Context(), db.Config{Path: path})
+			if err != nil {
+				t.Fatal(err)
+			}
+			if err := store.MarkDemo(t.Context(), db.DemoWhole); err != nil {
+				t.Fatal(err)
+			}
+			if _, err := store.AddPerson(t.Context(), "Ilse Marrow", db.Supervisor, "", "stored"); err != nil {
+				t.Fatal(err)
+			}
+			store.Close()
+			change := func(statement string) {
+				t.Helper()
+				pool, err := sql.Open("sqlite3", path)
+				if err != nil {
+					t.Fatal(err)
+				}
+				defer pool.Close()
+				if _, err := pool.ExecContext(t.Context(), statement); err != nil {
+					t.Fatal(err)
+				}
+			}
+			change(alter)
+			got := crossplumb(t, "", "demo", "--data", filepath.Dir(path), "--listen", "127.0.0.1:0")
+			if got.code != 1 || !strings.Contains(got.err, "made by another version") || !strings.Contains(got.err, "--fresh") || strings.Contains(got.err, "not the demo's") {
+				t.Errorf("it says %+v", got)
+			}
+			if _, err := os.Stat(path); err != nil {
+				t.Errorf("it was not left: %v", err)
+			}
+			if err := furnish(t.Context(), path, demoDay); !errors.Is(err, errOtherDemo) {
+				t.Errorf("furnish: %v", err)
+			}
+			change("UPDATE meta SET key = 'demo-not' WHERE key = 'demo'")
+			if err := removeDemo(t.Context(), path); err == nil || !strings.Contains(err.Error(), "not the demo's") {
+				t.Errorf("--fresh on what is no demo: %v", err)
+			}
+			change("UPDATE meta SET key = 'demo' WHERE key = 'demo-not'")
+			if err := removeDemo(t.Context(), path); err != nil {
+				t.Errorf("--fresh: %v", err)
+			}
+			if _, err := os.Stat(path); !errors.Is(err, os.ErrNotExist) {
+				t.Errorf("--fresh left it: %v", err)
+			}
+		})
 	}
 }

@@ -55,7 +55,7 @@ export function MountSection({ mount, page, record, shown }: Props) {
           <JudgedWith sheet={sheet} verdict={verdict} />
         </>
       )}
-      <ReadingsTable mount={mount.id} record={record} />
+      <ReadingsTable mount={mount.id} sheet={sheet} record={record} />
       <AimSection mount={mount} page={page} record={record} />
     </section>
   );

@@ -1,19 +1,22 @@
 // Who read what, when, with which instrument, exactly as typed. A reading that no longer counts is struck through and
 // says why: nothing that was ever read is hidden.
 
-import type { Offsets, Quantity, Reading } from '../types';
+import type { Offsets, Quantity, Reading, Sheet } from '../types';
 import { asGiven, placeTime } from './format';
 import type { JobRecord, MoveLine, ReadingLine } from './record';
 import { t } from './words';
 
 interface Props {
   mount: string;
+  sheet: Sheet;
   record: JobRecord;
 }
 
 const quantities: readonly Quantity[] = ['position', 'azimuth', 'tilt', 'skew'];
 
-export function ReadingsTable({ mount, record }: Props) {
+export function ReadingsTable({ mount, sheet, record }: Props) {
+  // Rods: their tilt is a lean forward or back.
+  const rods = sheet.near.antennas.filter((a) => a.pattern.kind === 'omni' || a.pattern.kind === 'dipole').map((a) => a.id);
   const readings = record.readings.filter((r) => r.mount === mount);
   const moves = record.moves.filter((m) => m.mount === mount);
   if (readings.length === 0 && moves.length === 0) {
@@ -58,7 +61,7 @@ export function ReadingsTable({ mount, record }: Props) {
                 </th>
               </tr>
               {lines.map((line) =>
-                'reading' in line ? <ReadingRow key={line.id} line={line} /> : <MoveRow key={line.id} line={line} />,
+                'reading' in line ? <ReadingRow key={line.id} line={line} rod={rods.includes(line.antenna)} /> : <MoveRow key={line.id} line={line} />,
               )}
             </tbody>
           );
@@ -78,7 +81,7 @@ function ordered(readings: ReadingLine[], moves: MoveLine[]): (ReadingLine | Mov
   );
 }
 
-function ReadingRow({ line }: { line: ReadingLine }) {
+function ReadingRow({ line, rod }: { line: ReadingLine; rod: boolean }) {
   const { reading, standing } = line;
   const used = standing.is === 'used';
   const why = used
@@ -94,7 +97,7 @@ function ReadingRow({ line }: { line: ReadingLine }) {
         {line.antenna} {t(`quantity.${line.quantity}`)}
       </th>
       <td class="number" data-label={t('desk.readings.value')}>
-        {struck(valueText(reading))}
+        {struck(line.quantity === 'tilt' ? tiltText(reading, rod) : valueText(reading))}
       </td>
       <td class="number" data-label={t('desk.readings.u')}>
         {reading.u == null ? t('desk.readings.no-u') : struck(`±\u00a0${asGiven(reading.u, reading.unit)}`)}
@@ -123,6 +126,14 @@ function MoveRow({ line }: { line: MoveLine }) {
       <td data-label={t('desk.readings.at')}>{placeTime(line.at)}</td>
     </tr>
   );
+}
+
+/** "0.4° down": the way in words, as the phone says it; a sign is read over. */
+function tiltText(reading: Reading, rod: boolean): string {
+  const { value } = reading;
+  if (typeof value !== 'number' || value === 0) return valueText(reading);
+  const way = t(`reading.way.${rod ? 'tilt-omni' : 'tilt'}.${value > 0 ? 'more' : 'less'}`);
+  return `${asGiven(Math.abs(value), reading.unit)} ${way}`;
 }
 
 function valueText(reading: Reading): string {

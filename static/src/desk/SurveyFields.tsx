@@ -103,7 +103,7 @@ export function SurveyFields({ id, sheet, edit, problemAt, onUnread }: Props) {
           error={problemAt('path.height_datum')}
         />
         {number('k', say('desk.survey.k'), '', path.k_factor, (s, v) => (s.path.k_factor = v), 'path.k_factor', say('desk.survey.k-hint'))}
-        {number('ground', say('ground.height'), 'm', path.above_ground_m, (s, v) => (s.path.above_ground_m = v), 'path.above_ground_m', say('desk.survey.ground-hint'))}
+        {number('ground', say('desk.survey.ground'), 'm', path.above_ground_m, (s, v) => (s.path.above_ground_m = v), 'path.above_ground_m', say('desk.survey.ground-hint'))}
         {target.answer && (
           <div class="wide survey-gives">
             <p class="figure">

@@ -140,12 +140,28 @@ withFetch('an ended session is told once it is met, but not by asking who is sig
 
 test('a new bearing turns what looked along the path, and leaves what was aimed elsewhere', () => {
   const sheet = desk.sheetFrom('two crossed panels');
+  desk.repath(sheet, 10, 0);
   sheet.near.antennas[1].azimuth.planned.value = 90;
   desk.repath(sheet, 300, 2);
   const aims = (end) => sheet[end].antennas.map((a) => [a.azimuth.planned.value, a.tilt.planned.value]);
   assert.deepEqual(aims('near'), [[300, 2], [90, 2]]);
   assert.deepEqual(aims('far'), [[120, -2], [120, -2]]);
   assert.equal(sheet.path.bearing_deg, 300);
+});
+
+test('no start knows the place: bearing and distance are empty, and what looks along the path has no azimuth until there is one', () => {
+  for (const template of desk.templates) {
+    const sheet = desk.sheetIn(desk.sheetText(desk.sheetFrom(template))); // as the draft keeps it
+    assert.deepEqual([sheet.path.bearing_deg, sheet.path.distance_m], [null, null], template);
+    const aims = () => [...sheet.near.antennas, ...sheet.far.antennas].flatMap((a) => (a.azimuth ? [a.azimuth.planned.value] : []));
+    const beams = aims().length / 2;
+    assert.equal(beams > 0, template !== 'two omnis apart');
+    assert.deepEqual(aims(), Array(2 * beams).fill(null), template);
+    desk.repath(sheet, 47, 0);
+    assert.deepEqual(aims(), [...Array(beams).fill(47), ...Array(beams).fill(227)], template);
+    desk.repath(sheet, null, 0);
+    assert.deepEqual([sheet.path.bearing_deg, ...aims()], [null, ...Array(2 * beams).fill(null)], template);
+  }
 });
 
 test('every limit that a plan starts with carries its reason', () => {
@@ -194,8 +210,20 @@ test('a supervisor plans and issues a job; complaints, contrast, three themes, a
 
   // Plan: the three starts are judged by the server; bad figures stay as typed, with the answer beside them.
   await page.getByRole('link', { name: 'Plan a job' }).click();
+  const judged = page.getByText('If it hangs exactly as planned');
+  const bearing = page.getByLabel('Bearing to the far end');
+  const focused = (id) => until(`${id} has the focus`, () => page.evaluate(() => document.activeElement?.id), (is) => is === id);
+  const issue = page.getByRole('button', { name: 'Issue the job' });
   for (const start of ['Two omnis apart', 'Two crossed panels', 'A crossed pair']) {
     await page.getByRole('button', { name: start }).click();
+    // Nothing is made up for the place, and nothing judged without it.
+    await page.getByText('Not judged yet').waitFor();
+    assert.deepEqual([await bearing.inputValue(), await page.getByLabel('Distance').first().inputValue(), await judged.count()], ['', '', 0]);
+    assert.match(await page.locator('#m1-bearing-error').innerText(), /Needed: the bearing/);
+    assert.match(await page.locator('#m1-distance-error').innerText(), /Needed: the distance/);
+    await bearing.fill('300');
+    await page.getByText('Not judged yet').waitFor();
+    await page.getByLabel('Distance').first().fill('1900');
     await page.getByText('If it hangs exactly as planned').waitFor();
   }
   const distance = page.getByLabel('Distance');
@@ -204,10 +232,16 @@ test('a supervisor plans and issues a job; complaints, contrast, three themes, a
     await until(`${typed} is answered beside its field`, () => page.locator('#m1-distance-error').innerText(), (text) => text.includes(answer));
     assert.equal(await distance.inputValue(), typed);
   }
+  // Emptied, its figure is gone: no verdict stands on one that nobody sees.
+  await distance.fill('');
+  await page.getByText('Not judged yet').waitFor();
+  assert.equal(await judged.count(), 0);
+  assert.equal(JSON.parse(await page.locator('.sheet-text').inputValue()).path.distance_m, null);
   await distance.fill('1900,5');
   await until('the sheet takes the comma', () => page.locator('.sheet-text').inputValue(), (text) => JSON.parse(text).path.distance_m === 1900.5);
   await page.getByRole('button', { name: 'Issue the job' }).click();
   await page.getByText('Name the site.').waitFor();
+  await focused('plan-site');
   assert.deepEqual(await barriers(page), []);
   await picture(page, 'desk-plan');
   await page.getByLabel('Site').fill('Lowe Stack');
@@ -216,7 +250,15 @@ test('a supervisor plans and issues a job; complaints, contrast, three themes, a
   await page.getByText('nobody is in a crew of this name yet').waitFor();
   await page.getByLabel('Crew').fill(` ${CREW.toUpperCase()}`); // goes to the crew that is there: a job reaches the phones of exactly its name
   await page.getByText('nobody is in a crew of this name yet').waitFor({ state: 'detached' });
+  await issue.click();
+  await focused('m1-name');
   await page.getByLabel('Name of the mount').fill('west');
+  await bearing.fill('');
+  await issue.click();
+  await focused('m1-bearing');
+  const box = await bearing.boundingBox();
+  assert.ok(box.y >= 0 && box.y + box.height <= page.viewportSize().height, 'the field is in sight');
+  await bearing.fill('301');
   await page.reload(); // what was typed is kept
   await page.getByText('If it hangs exactly as planned').waitFor();
   await page.getByRole('button', { name: 'Issue the job' }).click();
@@ -357,8 +399,9 @@ test('a job handed in is read, sent back with a remark, comes again and is signe
   assert.equal((await stage()).remark, 'Read the tilt as well.');
 
   // It comes again; while it is open more comes in: the decision is refused, said so, and made on what is new.
-  await phone.send(job, level('as_left', 'tilt', 0.4, '0.4'), handedIn('go', null));
+  await phone.send(job, level('as_left', 'tilt', -0.4, '-0.4'), handedIn('go', null));
   await page.getByRole('button', { name: 'Show it' }).click({ timeout: 30_000 });
+  await until('the tilt says its way in words', () => page.locator('.readings tbody').last().innerText(), (said) => /0\.4°\sdown/.test(said));
   await page.getByRole('button', { name: 'Sign off' }).click();
   await page.getByLabel('Remark, if there is one').fill('as drawn');
   await phone.send(job, level('as_left', 'skew', 0.5, '0,5'), handedIn('go', 'one more look'));

@@ -64,6 +64,20 @@ export function MountForm({ mount, place, nameMissing, onChange, onFit, onRemove
       onUnread={onUnread}
     />
   );
+  // Bearing and distance: no start can know them, so they begin empty, and emptied they are gone from the sheet.
+  const ofPlace = (name: 'bearing' | 'distance', unit: string, value: number | null | undefined, put: (sheet: Sheet, value: number | null) => void, hint?: string) => (
+    <NumberField
+      id={id(name)}
+      label={t(`desk.field.${name}`)}
+      unit={unit}
+      value={value ?? null}
+      needed={t(`desk.field.${name}-needed`)}
+      onValue={(v) => edit((s) => put(s, v))}
+      hint={hint ?? null}
+      problem={problemAt(`path.${name === 'bearing' ? 'bearing_deg' : 'distance_m'}`)}
+      onUnread={onUnread}
+    />
+  );
 
   return (
     <section class="mount-form" aria-labelledby={id('head')}>
@@ -126,9 +140,9 @@ export function MountForm({ mount, place, nameMissing, onChange, onFit, onRemove
               </fieldset>
               <fieldset class="group">
                 <legend>{t('desk.path')}</legend>
-                {number('bearing', '°', sheet.path.bearing_deg, (s, v) => repath(s, v, s.path.elevation_deg), ['path.bearing_deg'], { hint: t('desk.field.bearing-hint') })}
+                {ofPlace('bearing', '°', sheet.path.bearing_deg, (s, v) => repath(s, v, s.path.elevation_deg), t('desk.field.bearing-hint'))}
                 {number('elevation', '°', sheet.path.elevation_deg, (s, v) => repath(s, s.path.bearing_deg, v), ['path.elevation_deg'], { hint: t('desk.field.elevation-hint') })}
-                {number('distance', 'm', sheet.path.distance_m, (s, v) => (s.path.distance_m = v), ['path.distance_m'])}
+                {ofPlace('distance', 'm', sheet.path.distance_m, (s, v) => ((s.path.distance_m as number | null) = v))}
               </fieldset>
               <SurveyFields id={id('survey')} sheet={sheet} edit={edit} problemAt={problemAt} onUnread={onUnread} />
               <AntennaFields sheet={sheet} end="near" number={number} />
@@ -145,11 +159,12 @@ export function MountForm({ mount, place, nameMissing, onChange, onFit, onRemove
               spellcheck={false}
               value={mount.text}
               aria-label={t('desk.plan.as-text')}
+              aria-invalid={sheet === null ? 'true' : undefined}
               onInput={(e) => onChange({ text: e.currentTarget.value })}
             />
           </details>
         </div>
-        <PlanCheck sheet={sheet} check={check} />
+        <PlanCheck id={id('check')} sheet={sheet} check={check} />
       </div>
     </section>
   );

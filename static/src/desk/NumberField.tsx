@@ -14,6 +14,8 @@ interface Props {
   onValue: (value: number | null) => void;
   /** Empty is an answer. */
   optional?: boolean;
+  /** What to say where nothing is typed; with it the value goes as well when the field is emptied. */
+  needed?: string | null;
   hint?: string | null;
   /** What the server says of this field. */
   problem?: string | null;
@@ -23,10 +25,11 @@ interface Props {
 
 const asText = (value: number | null) => (value === null ? '' : shortest(value, 9));
 
-export function NumberField({ id, label, unit, value, onValue, optional, hint, problem, onUnread }: Props) {
+export function NumberField({ id, label, unit, value, onValue, optional, needed, hint, problem, onUnread }: Props) {
   const [text, setText] = useState(asText(value));
   const typed = readNumber(text);
-  const emptyIsFine = optional === true && text.trim() === '';
+  const empty = text.trim() === '';
+  const emptyIsFine = optional === true && empty;
   const unread = !typed.ok && !emptyIsFine;
 
   useEffect(() => {
@@ -51,10 +54,10 @@ export function NumberField({ id, label, unit, value, onValue, optional, hint, p
         setText(next);
         const read = readNumber(next);
         if (read.ok) onValue(read.value);
-        else if (optional === true && next.trim() === '') onValue(null);
+        else if ((optional === true || needed) && next.trim() === '') onValue(null);
       }}
       hint={hint ?? null}
-      error={unread ? t(typed.ok ? 'number.empty' : `number.${typed.why}`) : (problem ?? null)}
+      error={unread && empty && needed ? needed : unread ? t(typed.ok ? 'number.empty' : `number.${typed.why}`) : (problem ?? null)}
     />
   );
 }

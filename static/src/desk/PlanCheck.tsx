@@ -15,12 +15,14 @@ export interface Check {
   problem: Problem | null;
   asking: boolean;
   unreachable: boolean;
+  /** A field holds no number: there is nothing to judge, for the sheet would have one that nobody sees. */
+  waits: boolean;
 }
 
 /** Long enough not to ask at each keystroke, short enough to be felt as an answer. */
 const pauseMs = 400;
 
-const nothing: Check = { verdict: null, problem: null, asking: true, unreachable: false };
+const nothing: Check = { verdict: null, problem: null, asking: true, unreachable: false, waits: false };
 
 export function usePlanCheck(text: string, unread: boolean, onFit: (fit: boolean) => void): Check {
   const [check, setCheck] = useState<Check>(nothing);
@@ -34,7 +36,11 @@ export function usePlanCheck(text: string, unread: boolean, onFit: (fit: boolean
     setCheck((c) => ({ ...c, asking: true }));
     const sheet = sheetIn(text);
     if (sheet === null) {
-      setCheck({ verdict: null, problem: null, asking: false, unreachable: false });
+      setCheck({ ...nothing, asking: false });
+      return;
+    }
+    if (unread) {
+      setCheck({ ...nothing, asking: false, waits: true });
       return;
     }
     const settle = (next: Partial<Check>) => {
@@ -43,7 +49,7 @@ export function usePlanCheck(text: string, unread: boolean, onFit: (fit: boolean
     const ask = () =>
       api.judge(sheet).then(
         (verdict) => {
-          if (turn === latest.current && !unread) report.current(true);
+          if (turn === latest.current) report.current(true);
           settle({ verdict });
         },
         (err: unknown) => {
@@ -58,12 +64,13 @@ export function usePlanCheck(text: string, unread: boolean, onFit: (fit: boolean
   return check;
 }
 
-export function PlanCheck({ sheet, check }: { sheet: Sheet | null; check: Check }) {
+export function PlanCheck({ id, sheet, check }: { id: string; sheet: Sheet | null; check: Check }) {
   const { verdict, problem } = check;
   return (
-    <aside class="plan-check" aria-busy={check.asking} aria-live="polite">
+    <aside id={id} tabIndex={-1} class="plan-check" aria-busy={check.asking} aria-live="polite">
       <h3>{t('desk.check')}</h3>
       {check.unreachable && <Message tone="warn">{t('desk.check.unreachable')}</Message>}
+      {check.waits && sheet !== null && <p>{t('desk.check.waits')}</p>}
       {problem !== null && (
         <Message tone="wrong">
           {problem.field !== '' && <code class="at-field">{problem.field}</code>}

@@ -1,6 +1,6 @@
 // Issuing a job: the visit, then each mount with its sheet. Nothing is sent before every mount can be judged.
 
-import { useEffect, useLayoutEffect, useState } from 'preact/hooks';
+import { useEffect, useLayoutEffect, useRef, useState } from 'preact/hooks';
 import { Button } from '../parts/Button';
 import { Message } from '../parts/Message';
 import { readNumber } from '../parts/number';
@@ -29,11 +29,25 @@ export function PlanPage({ jobs, onIssued }: Props) {
   const [busy, setBusy] = useState(false);
   const [problem, setProblem] = useState<{ field: string; text: string } | null>(null);
   const [issued, setIssued] = useState<JobDraft | null>(null);
+  const form = useRef<HTMLFormElement>(null);
+  // Counts the presses that were refused, here or by the server.
+  const [refused, setRefused] = useState(0);
 
   // At once, not after the next picture: the tab may be closed right after the last letter.
   useLayoutEffect(() => {
     if (issued === null) keepDraft(draft);
   }, [draft, issued]);
+
+  // A long form: a press that is refused leads to the first field with a complaint, in the order of the page; where none has
+  // one, to what the server says of the first mount that cannot be judged.
+  useEffect(() => {
+    if (refused === 0) return;
+    const unfitAt = draft.mounts.find((m) => fit[m.id] !== true);
+    const to = form.current?.querySelector<HTMLElement>('[aria-invalid="true"]') ?? (unfitAt ? document.getElementById(`${unfitAt.id}-check`) : null);
+    to?.focus({ preventScroll: true });
+    to?.scrollIntoView({ block: 'center' });
+    // Only a refusal leads: nobody is moved while typing.
+  }, [refused]);
 
   // Crews that somebody is in; null where that is not known.
   const [manned, setManned] = useState<string[] | null>(null);
@@ -92,7 +106,11 @@ export function PlanPage({ jobs, onIssued }: Props) {
   const submit = (event: Event) => {
     event.preventDefault();
     setAsked(true);
-    if (!ready || busy) return;
+    if (busy) return;
+    if (!ready) {
+      setRefused((n) => n + 1);
+      return;
+    }
     setBusy(true);
     setProblem(null);
     const orNull = (text: string) => (text.trim() === '' ? null : text.trim());
@@ -120,12 +138,11 @@ export function PlanPage({ jobs, onIssued }: Props) {
           setIssued({ ...draft, crew });
           onIssued();
         },
-        (err: unknown) =>
-          setProblem(
-            err instanceof api.ApiProblem
-              ? { field: err.field, text: err.detail }
-              : { field: '', text: t('desk.plan.unreachable') },
-          ),
+        (err: unknown) => {
+          if (!(err instanceof api.ApiProblem)) return setProblem({ field: '', text: t('desk.plan.unreachable') });
+          setProblem({ field: err.field, text: err.detail });
+          setRefused((n) => n + 1);
+        },
       )
       .finally(() => setBusy(false));
   };
@@ -133,7 +150,7 @@ export function PlanPage({ jobs, onIssued }: Props) {
   const sites = [...new Set((jobs ?? []).map((j) => j.site))].sort();
   const nobody = manned !== null && crew !== '' && !manned.includes(crew) ? t('desk.plan.crew-empty') : null;
   return (
-    <form class="page plan" onSubmit={submit} noValidate>
+    <form ref={form} class="page plan" onSubmit={submit} noValidate>
       <h1>{t('desk.plan')}</h1>
       <div class="visit-form">
         <TextField id="plan-site" label={t('desk.plan.site')} text={draft.site} onText={set('site')} error={missing('site')} known={sites} />

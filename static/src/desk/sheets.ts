@@ -120,12 +120,17 @@ function limitsOf(template: Template): Limit[] {
   }
 }
 
+/**
+ * What only the place can tell: empty until it is typed, for a figure put in here would be issued by somebody in a hurry.
+ * A draft is JSON that may lack anything; the server judges none that lacks this.
+ */
+const notYet = null as unknown as number;
+
 export function sheetFrom(template: Template): Sheet {
-  const path = { bearing_deg: 0, elevation_deg: 0, distance_m: 1000 };
+  const path = { bearing_deg: notYet, elevation_deg: 0, distance_m: notYet };
   // Two like antennas at a distance hear each other's ports alike: only a radio that combines its chains can part them.
   const combining = template !== 'crossed pair';
   const spacing = template === 'two omnis apart' ? 1000 : 500;
-  const farBearing = (path.bearing_deg + 180) % 360;
   return {
     sheet: 1,
     title: '',
@@ -139,8 +144,8 @@ export function sheetFrom(template: Template): Sheet {
       snr_db: null,
       links: null,
     },
-    near: { antennas: mount(template, path.bearing_deg, path.elevation_deg, spacing) },
-    far: { antennas: mount(template, farBearing, -path.elevation_deg, spacing) },
+    near: { antennas: mount(template, path.bearing_deg, 0, spacing) },
+    far: { antennas: mount(template, path.bearing_deg, 0, spacing) },
     path,
     surroundings: {
       sight: true,
@@ -181,21 +186,31 @@ export function sheetIn(text: string): Sheet | null {
   }
 }
 
-/** A change of the path turns what was planned to look along it; an antenna aimed elsewhere on purpose stays. */
-export function repath(sheet: Sheet, bearing: number, elevation: number): void {
+/** 360° is 0°. */
+const turned = (bearing: number | null) => (bearing === null ? null : bearing % 360);
+
+/** The way back; of a bearing that is not known there is none. */
+const back = (bearing: number | null) => (bearing === null ? null : (bearing + 180) % 360);
+
+/**
+ * A change of the path turns what was planned to look along it; an antenna aimed elsewhere on purpose stays. Without a
+ * bearing (null) what looked along the path has no azimuth either, until there is one again.
+ */
+export function repath(sheet: Sheet, bearing: number | null, elevation: number): void {
   const old = sheet.path;
+  const was: number | null = old.bearing_deg ?? null;
   const ends = [
-    { antennas: sheet.near.antennas, was: old.bearing_deg, is: bearing, up: 1 },
-    { antennas: sheet.far.antennas, was: (old.bearing_deg + 180) % 360, is: (bearing + 180) % 360, up: -1 },
+    { antennas: sheet.near.antennas, was, is: bearing, up: 1 },
+    { antennas: sheet.far.antennas, was: back(was), is: back(bearing), up: -1 },
   ];
   for (const end of ends) {
     for (const a of end.antennas) {
       const azimuth = a.azimuth?.planned;
-      if (azimuth && azimuth.value % 360 === end.was % 360) azimuth.value = end.is;
+      if (azimuth && turned(azimuth.value ?? null) === turned(end.was)) azimuth.value = end.is ?? notYet;
       const tilt = a.tilt.planned;
       const turns = a.azimuth != null;
       if (turns && tilt && tilt.value === end.up * old.elevation_deg) tilt.value = end.up * elevation || 0;
     }
   }
-  sheet.path = { ...old, bearing_deg: bearing, elevation_deg: elevation };
+  sheet.path = { ...old, bearing_deg: bearing ?? notYet, elevation_deg: elevation };
 }

@@ -19,9 +19,9 @@ type Search struct {
 // steps of 1 dB (0.29) and some flutter. Common practice.
 const DefaultLevelDoubt = 0.5
 
-// window is how far below the best level the form of the main lobe holds, dB.
+// Window is how far below the best level the form of the main lobe holds, dB.
 // There −12(θ/θ₃)² and the pattern of a uniform line source part by 0.5 dB.
-const window = 6.0
+const Window = 6.0
 
 // The words for a lobe.
 const (
@@ -37,8 +37,11 @@ type Want string
 const (
 	WantMore      Want = "more" // too few readings
 	WantBothSides Want = "both sides"
-	WantWider     Want = "wider" // flat: too narrow a sweep for the beam
-	WantCalm      Want = "calm"  // too noisy
+	WantWider     Want = "wider"           // flat on both sides: too narrow a sweep for the beam
+	WantFiner     Want = "finer"           // it falls by more than 6 dB from one step to the next
+	WantAgain     Want = "again"           // neither flat nor few, and the form does not settle
+	WantCheck     Want = "check beamwidth" // the lobe is not as wide as the stated beamwidth makes it
+	WantCalm      Want = "calm"            // too noisy
 	WantBeamwidth Want = "beamwidth"
 	WantLevel     Want = "expected level"
 	WantFarther   Want = "farther" // it is a side lobe, or may be: look for a higher peak
@@ -54,12 +57,20 @@ type Result struct {
 	WidthDoubt float64
 	Lobe       string
 	MainOdds   float64
-	Noise      float64 // standard deviation of one reading as found, dB
-	Used       []bool  // which readings the fit took
+	Noise      float64   // standard deviation of one reading as found, dB
+	Used       []bool    // which readings the fit took
+	Beyond     []bool    // which lie within 6 dB of the best, but past one that does not
+	GoTo       []float64 // WantBothSides: angles to go on to, at most one each side, where a width tells how far
+	Short      [2]bool   // WantBothSides: the side of lower angles, of higher angles
+	Gap        []float64 // WantFiner: the two angles between which to step
 	Wants      []Want
 	curve      *parabola
 	centre     float64
 }
+
+// fallen is how far below its top a level must be for a side to be seen falling,
+// dB: the half-power point less a reading's doubt.
+const fallen = 2.5
 
 // confident is how sure a word is that is not "unsure".
 const confident = 0.95
@@ -106,14 +117,17 @@ func (s Search) Fit() Result {
 	})
 	here := slices.Index(order, best)
 	first, last := here, here
-	within := func(i int) bool { return s.Levels[order[i]] >= s.Levels[best]-window }
+	within := func(i int) bool { return s.Levels[order[i]] >= s.Levels[best]-Window }
 	for first > 0 && within(first-1) {
 		first--
 	}
 	for last < n-1 && within(last+1) {
 		last++
 	}
-	r := Result{Used: make([]bool, n), Level: s.Levels[best], LevelDoubt: s.LevelDoubt, Lobe: Unsure, MainOdds: priorMain, Noise: s.LevelDoubt, centre: centre}
+	r := Result{Used: make([]bool, n), Beyond: make([]bool, n), Level: s.Levels[best], LevelDoubt: s.LevelDoubt, Lobe: Unsure, MainOdds: priorMain, Noise: s.LevelDoubt, centre: centre}
+	for i := range n {
+		r.Beyond[order[i]] = (i < first || i > last) && within(i)
+	}
 	var xs, ys []float64
 	for _, i := range order[first : last+1] {
 		r.Used[i] = true
@@ -146,6 +160,7 @@ func (s Search) Fit() Result {
 
 	// Then with all that is known.
 	use, ok := free, okFree && distinct >= 3
+	parts := false // from the stated beamwidth
 	if s.Beamwidth > 0 {
 		c0, share := -12/(s.Beamwidth*s.Beamwidth), 2*beamwidthDoubt
 		switch r.Lobe {
@@ -157,22 +172,45 @@ func (s Search) Fit() Result {
 		use, ok = fitParabola(xs, ys, c0, share*-c0, s.LevelDoubt)
 		ok = ok && distinct >= 2
 	}
-	if ok && use.c+2*use.uc < 0 {
-		top := -use.b / (2 * use.c)
-		doubt := use.peakDoubt()
-		width := math.Sqrt(-12 / use.c)
-		// A peak far outside of what was swept is a guess.
-		if top > lo-width/2 && top < hi+width/2 && doubt < width/2 {
-			peak := centre + top
-			r.Peak, r.PeakDoubt = &peak, doubt
-			r.Level, r.LevelDoubt = use.top, use.uTop
-			r.Width, r.WidthDoubt = &width, width*use.uc/(2*-use.c)
-			curve := use
-			r.curve = &curve
+	r.take(use, ok, lo, hi)
+	if parts = r.Peak == nil && s.Beamwidth > 0 && bent && distinct >= 3; parts {
+		// The readings bend by themselves, and the stated beamwidth flattens them: it is
+		// not their lobe's. They are taken as if it were not known.
+		r.take(free, true, lo, hi)
+		parts = r.Peak != nil
+	}
+	// How far it falls to each side, and the first reading past the fit there.
+	var edges [2]edge
+	for k, i := range [2]int{first - 1, last + 1} {
+		if i >= 0 && i < n {
+			edges[k] = edge{there: true, x: x[order[i]], level: s.Levels[order[i]]}
 		}
 	}
-	r.Wants = s.wants(r, xs, ys, distinct)
+	r.want(s, xs, ys, distinct, edges, parts)
 	return r
+}
+
+// take enters a fit over lo to hi, where it shows a peak.
+func (r *Result) take(fit parabola, ok bool, lo, hi float64) {
+	if !ok || fit.c+2*fit.uc >= 0 {
+		return
+	}
+	top, doubt := -fit.b/(2*fit.c), fit.peakDoubt()
+	width := math.Sqrt(-12 / fit.c)
+	// A peak far outside of what was swept is a guess.
+	if top > lo-width/2 && top < hi+width/2 && doubt < width/2 {
+		peak, u := r.centre+top, width*fit.uc/(2*-fit.c)
+		r.Peak, r.PeakDoubt = &peak, doubt
+		r.Level, r.LevelDoubt = fit.top, fit.uTop
+		r.Width, r.WidthDoubt = &width, u
+		r.curve = &fit
+	}
+}
+
+// edge is the nearest reading that the fit left out on one side.
+type edge struct {
+	there    bool
+	x, level float64
 }
 
 // word names the lobe from its odds.
@@ -197,46 +235,103 @@ func (s Search) word(odds float64, free parabola, fitted bool) string {
 	return Unsure
 }
 
-// wants tells what more to take.
-func (s Search) wants(r Result, xs, ys []float64, distinct int) []Want {
-	var w []Want
+// want tells what more to take, and where.
+func (r *Result) want(s Search, xs, ys []float64, distinct int, edges [2]edge, parts bool) {
+	add := func(w Want) { r.Wants = append(r.Wants, w) }
 	if len(xs) < 5 || distinct < 3 {
-		w = append(w, WantMore)
+		add(WantMore)
 	}
-	lowest := slices.Min(ys)
-	if r.Peak == nil || r.Level-lowest < 2.5 {
-		w = append(w, WantWider)
-	}
+	at, margin := 0.0, 0.0
 	if r.Peak != nil {
-		at := *r.Peak - r.centre
-		left, right := 0, 0
-		for _, x := range xs {
-			if x < at-r.PeakDoubt {
-				left++
-			}
-			if x > at+r.PeakDoubt {
-				right++
+		at, margin = math.Remainder(*r.Peak-r.centre, 2*math.Pi), r.PeakDoubt
+	}
+	// By side, lower angles first: readings, the fall of those that the fit took, and
+	// with the first one left out.
+	var count [2]int
+	var fall, whole [2]float64
+	for i, x := range xs {
+		side := 0
+		switch {
+		case x > at+margin:
+			side = 1
+		case x >= at-margin:
+			continue
+		}
+		count[side]++
+		fall[side] = math.Max(fall[side], r.Level-ys[i])
+	}
+	for k, e := range edges {
+		whole[k] = fall[k]
+		if e.there {
+			whole[k] = math.Max(fall[k], r.Level-e.level)
+		}
+	}
+	falls := [2]bool{whole[0] >= fallen, whole[1] >= fallen}
+	seen := math.Max(fall[0], fall[1]) >= fallen
+	if !falls[0] && !falls[1] {
+		add(WantWider)
+	}
+	// A side is short that has too few readings and, without a peak or a fall that the
+	// fit saw, one along which the level does not fall.
+	short := [2]bool{}
+	for k := range short {
+		if r.Peak != nil {
+			short[k] = count[k] < 2
+		} else {
+			short[k] = count[k] == 0
+		}
+		if (falls[0] || falls[1]) && (r.Peak == nil || !seen) {
+			short[k] = short[k] || !falls[k]
+		}
+	}
+	lo, hi := xs[0], xs[len(xs)-1]
+	outer := [2]float64{lo, hi}
+	// The level jumps past the 6 dB: the side has its end, and wants steps before it.
+	gap := -1
+	for k, e := range edges {
+		if e.there && (short[k] || (!seen && falls[k] && (gap < 0 || whole[k] > whole[gap]))) {
+			gap = k
+		}
+		short[k] = short[k] && !e.there
+	}
+	if short[0] || short[1] {
+		add(WantBothSides)
+		r.Short = short
+		half := 0.0
+		switch {
+		case r.Width != nil:
+			half = *r.Width / 2
+		case s.Beamwidth > 0 && !parts:
+			half = s.Beamwidth / 2
+		}
+		for k, sign := range [2]float64{-1, 1} {
+			if to := at + sign*half; short[k] && half > 0 && sign*(to-outer[k]) > 0 {
+				r.GoTo = append(r.GoTo, r.centre+to)
 			}
 		}
-		if left < 2 || right < 2 {
-			w = append(w, WantBothSides)
-		}
-	} else if xs[0] == 0 || xs[len(xs)-1] == 0 { // the best reading is at an end
-		w = append(w, WantBothSides)
+	}
+	if gap >= 0 {
+		add(WantFiner)
+		r.Gap = []float64{r.centre + outer[gap], r.centre + edges[gap].x}
 	}
 	if r.Noise > noisy {
-		w = append(w, WantCalm)
+		add(WantCalm)
+	}
+	if parts {
+		add(WantCheck)
+	}
+	if r.Peak == nil && len(r.Wants) == 0 {
+		add(WantAgain)
 	}
 	if r.Lobe != Main {
 		if s.Beamwidth <= 0 {
-			w = append(w, WantBeamwidth)
+			add(WantBeamwidth)
 		}
 		if s.Expected == nil {
-			w = append(w, WantLevel)
+			add(WantLevel)
 		}
-		w = append(w, WantFarther)
+		add(WantFarther)
 	}
-	return w
 }
 
 // LevelAt is the fitted level at an angle, dBm; ok is false where there is no

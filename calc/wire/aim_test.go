@@ -361,3 +361,44 @@ func TestAimNearThePole(t *testing.T) {
 		t.Errorf("a bearing from the pole: %v", a["back_bearing_deg"])
 	}
 }
+
+// What a person is told of a short search: which side wants more and how far, what was
+// left out and why, and "flat" only where it is flat. Levels of −12(θ/θ₃)² about 72° by
+// hand, rounded to 0.1 dB.
+func TestPeakTellsWhichSide(t *testing.T) {
+	for _, row := range []struct {
+		name, ask string
+		says      []string
+		not       []string
+		leftOut   int
+		peak      bool
+	}{
+		// θ₃ = 6°: 68° lies 5.3 dB down, 67° 8.3 dB, 74.8° 2.6 dB.
+		{"boxed in", `{"angles_deg":[67,68,70,72,74,74.8],"levels_dbm":[-56.3,-53.3,-49.3,-48,-49.3,-50.6],"beamwidth_deg":6}`, []string{"8.3 dB below the best level"}, []string{"flat", "boxed in"}, 1, true},
+		{"a beamwidth of another antenna", `{"angles_deg":[68,70,71,72,73,74],"levels_dbm":[-56.2,-52,-51,-48,-48.9,-50.7],"beamwidth_deg":10}`, []string{"the beamwidth is given as 10°", "8.2 dB below the best level"}, []string{"flat"}, 1, true},
+		{"the right side short", `{"angles_deg":[68,69,70,71,72],"levels_dbm":[-53.3,-51,-49.3,-48.3,-48],"beamwidth_deg":6}`, []string{"go on towards higher angles, past 72°, until the level is 3 dB lower (about 3° more, to 75°)"}, []string{"flat", "lower angles"}, 0, true},
+		{"the left side short, across north", `{"angles_deg":[0,1,2,3,4],"levels_dbm":[-48,-48.3,-49.3,-51,-53.3],"beamwidth_deg":6}`, []string{"go on towards lower angles, past 0°, until the level is 3 dB lower (about 3° more, to 357°)"}, []string{"flat", "higher angles"}, 0, true},
+		{"one long step", `{"angles_deg":[67,71,71.5,72,72.5,73],"levels_dbm":[-56.3,-48.3,-48.1,-48,-48.1,-48.3],"beamwidth_deg":6}`, []string{"Between 71° and 67° the level falls past 6 dB", "past 73°"}, []string{"flat"}, 1, false},
+		{"flat", `{"angles_deg":[71,71.5,72,72.5,73],"levels_dbm":[-48.3,-48.1,-48,-48.1,-48.3],"beamwidth_deg":6}`, []string{"Too flat on both sides"}, nil, 0, false},
+		{"a second lobe", `{"angles_deg":[60,64,68,70,72,74,76],"levels_dbm":[-53,-60,-53.3,-49.3,-48,-49.3,-53.3],"beamwidth_deg":6}`, []string{"Past a reading more than 6 dB down", "12 dB below the best level"}, []string{"flat"}, 2, true},
+	} {
+		p := ask(t, "peak.fit", row.ask)
+		told := fmt.Sprint(p["take_more"], p["left_out"])
+		for _, s := range row.says {
+			if !strings.Contains(told, s) {
+				t.Errorf("%s: %q is not said: %s", row.name, s, told)
+			}
+		}
+		for _, s := range row.not {
+			if strings.Contains(told, s) {
+				t.Errorf("%s: %q is said: %s", row.name, s, told)
+			}
+		}
+		if n := len(p["left_out"].([]any)); n != row.leftOut {
+			t.Errorf("%s: %d left out, not %d", row.name, n, row.leftOut)
+		}
+		if row.peak && p["peak_deg"] == nil {
+			t.Errorf("%s: no peak: %s", row.name, told)
+		}
+	}
+}

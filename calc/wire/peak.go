@@ -2,6 +2,9 @@ package wire
 
 import (
 	"math"
+	"slices"
+	"strconv"
+	"strings"
 
 	"crossplumb/calc/aim"
 	"crossplumb/calc/codec"
@@ -107,6 +110,19 @@ func peakFit(v *codec.Value) (answer, *Problem) {
 		}
 	}
 	out.Set("used", used)
+	best := slices.Max(levels)
+	leftOut := codec.Seq()
+	for i, u := range r.Used {
+		if u {
+			continue
+		}
+		why := decimal(best-levels[i]) + " dB below the best level: what lies more than " + decimal(peak.Window) + " dB down is no part of the fit to the main lobe."
+		if r.Beyond[i] {
+			why = "Past a reading more than " + decimal(peak.Window) + " dB down: it may belong to another lobe."
+		}
+		leftOut.Items = append(leftOut.Items, codec.Obj(codec.M("angle_deg", codec.Num(angles[i])), codec.M("level_dbm", codec.Num(levels[i])), codec.M("why", codec.Str(why))))
+	}
+	out.Set("left_out", leftOut)
 	out.Set("curve", curve)
 	take := codec.Seq()
 	want := func(code, text string) {
@@ -116,7 +132,7 @@ func peakFit(v *codec.Value) (answer, *Problem) {
 		want("power control", "Is automatic transmit power control off at both ends? While it is on, levels mean nothing.")
 	}
 	for _, w := range r.Wants {
-		want(string(w), wantText(w))
+		want(string(w), wantText(w, r, s, show))
 	}
 	if expected != nil && r.Level > *expected+3*math.Hypot(*expectedDoubt, r.LevelDoubt) {
 		want("too high", "The level is higher than expected by more than its doubt: check transmit power, gains and distance that the expected level was made from.")
@@ -126,16 +142,28 @@ func peakFit(v *codec.Value) (answer, *Problem) {
 	return out, nil
 }
 
-func wantText(w peak.Want) string {
+// decimal writes a figure of a sentence to a tenth.
+func decimal(x float64) string {
+	return strconv.FormatFloat(math.Round(x*10)/10, 'f', -1, 64)
+}
+
+func wantText(w peak.Want, r peak.Result, s peak.Search, show func(float64) *codec.Value) string {
+	at := func(a float64) string { return decimal(show(a).Num) + "°" }
 	switch w {
 	case peak.WantMore:
 		return "Too few readings: take at least five within 6 dB of the best, at three angles or more."
 	case peak.WantBothSides:
-		return "The peak is not boxed in: go on past it, at least two readings on each side."
+		return bothSidesText(r, s, at)
 	case peak.WantWider:
-		return "Too flat: step wider, until the level is 3 dB lower on both sides."
+		return "Too flat on both sides: step wider, until the level is 3 dB lower on each."
+	case peak.WantFiner:
+		return "Between " + at(r.Gap[0]) + " and " + at(r.Gap[1]) + " the level falls past 6 dB in one step: take smaller steps there."
+	case peak.WantAgain:
+		return "The level falls on both sides, but the readings scatter too much for a peak: read each angle again, and in between."
 	case peak.WantCalm:
 		return "Too noisy: read each angle again, wait for the wind to drop."
+	case peak.WantCheck:
+		return "The lobe is " + decimal(*r.Width/degree) + "° wide and the beamwidth is given as " + decimal(s.Beamwidth/degree) + "°: check which antenna and plane that is of. The peak is told without it."
 	case peak.WantBeamwidth:
 		return "Give the half-power beamwidth of the antenna in this plane: its width tells a main lobe from a side lobe."
 	case peak.WantLevel:
@@ -144,6 +172,40 @@ func wantText(w peak.Want) string {
 		return "This may be a side lobe: sweep two beamwidths to each side and look for a higher peak."
 	}
 	return string(w)
+}
+
+// bothSidesText tells which side of the peak is short, and how far to go on there
+// where a width tells it.
+func bothSidesText(r peak.Result, s peak.Search, at func(float64) string) string {
+	sides := [2]string{"towards lower angles", "towards higher angles"}
+	var told []string
+	best := s.Angles[0]
+	for i, l := range s.Levels {
+		if l == slices.Max(s.Levels) {
+			best = s.Angles[i]
+			break
+		}
+	}
+	for k, short := range r.Short {
+		if !short {
+			continue
+		}
+		// The outermost reading of the fit on this side.
+		outer := best
+		for i, a := range s.Angles {
+			if off := math.Remainder(a-outer, 2*math.Pi); r.Used[i] && (off > 0) == (k == 1) && off != 0 {
+				outer = a
+			}
+		}
+		text := sides[k] + ", past " + at(outer) + ", until the level is 3 dB lower"
+		for _, to := range r.GoTo {
+			if off := math.Remainder(to-outer, 2*math.Pi); off != 0 && (off > 0) == (k == 1) {
+				text += " (about " + decimal(math.Abs(off)/degree) + "° more, to " + at(to) + ")"
+			}
+		}
+		told = append(told, text)
+	}
+	return "The peak is not boxed in: go on " + strings.Join(told, "; and ") + ". At least two readings belong on each side."
 }
 
 // faceAngle is what a level or a phone reads on one face.

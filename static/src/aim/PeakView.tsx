@@ -3,7 +3,7 @@
 import { PeakPlot } from '../draw/PeakPlot.tsx';
 import { Message } from '../parts/Message.tsx';
 import { say } from '../words/aim.ts';
-import { figure, percent } from '../words/figures.ts';
+import { figure, percent, shortest } from '../words/figures.ts';
 import type { PeakAnswer } from './answers.ts';
 import { Facts } from './Facts.tsx';
 import type { Axis, Step } from './questions.ts';
@@ -36,6 +36,18 @@ export function PeakView({ axis, steps, answer, expected }: PeakViewProps) {
             ]}
           />
           {answer.lobe === 'side' && <Message tone="warn">{say('peak.side-warning')}</Message>}
+          {answer.left_out.length > 0 && (
+            <div>
+              <p>
+                <strong>{say('peak.left-out')}</strong>
+              </p>
+              <ul class="plain-list figure">
+                {answer.left_out.map((step, i) => (
+                  <li key={i}>{say('peak.left-out-step', { angle: `${shortest(step.angle_deg, 2)}°`, level: `${shortest(step.level_dbm, 1)} dBm`, why: step.why })}</li>
+                ))}
+              </ul>
+            </div>
+          )}
           {answer.take_more.length > 0 ? (
             <div>
               <p>

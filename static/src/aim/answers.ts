@@ -108,6 +108,7 @@ export interface PeakAnswer {
   odds_main: number;
   noise_db: number;
   used: boolean[];
+  left_out: { angle_deg: number; level_dbm: number; why: string }[];
   curve: { angle_deg: number; level_dbm: number }[];
   take_more: { code: string; text: string }[];
   enough: boolean;

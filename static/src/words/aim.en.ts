@@ -243,6 +243,8 @@ export const aimEn = {
   'peak.short.side': 'side lobe',
   'peak.short.unsure': 'lobe unsure',
   'peak.side-warning': 'This is most likely a side lobe. Do not tighten here: the main lobe stands higher, to one side of it.',
+  'peak.left-out': 'Left out of the fit',
+  'peak.left-out-step': '{angle} at {level}: {why}',
   'peak.take-more': 'What more to take',
   'peak.enough': 'Enough: the peak is boxed in.',
   'peak.now': 'Peak {peak}.',

@@ -96,7 +96,7 @@ function Searching({ open, form, job: jobId, mount: mountId }: Address & { open:
     if (!answer) return;
     setBusy(true);
     try {
-      const { curve: _curve, used: _used, ...short } = answer;
+      const { curve: _curve, used: _used, left_out: _leftOut, ...short } = answer;
       await addEntry('peak.fitted', jobId, mountId, { antenna: antenna.id, axis, search: number, answer: short });
       setSaid(say('peak.kept'));
     } catch (error) {

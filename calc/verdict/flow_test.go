@@ -35,8 +35,8 @@ func planned(t testing.TB, v *verdict.Verdict, name string) float64 {
 }
 
 // TestTwoOmnisHalfAWavelengthApart: at 20 dB at most 1.45 effective streams in RMa
-// with sight, at least 1.85 in UMi without; end-on to the arrivals worse (figures of
-// the project's physics issue, common practice).
+// with sight, at least 1.85 in UMi without; end-on to the arrivals worse (common
+// practice).
 func TestTwoOmnisHalfAWavelengthApart(t *testing.T) {
 	rma := judged(t, omnis(t, "RMa", true))
 	if got := *outcome(t, rma, sheet.EffectiveStreams).Value; got > 1.45 {
@@ -159,9 +159,32 @@ func TestTheSurroundingsDecide(t *testing.T) {
 	if w := judged(t, s); w.Word != verdict.MeasureAgain || w.Reason.Code != verdict.SurroundingsDecide || !strings.Contains(w.Reason.Text, " spreads. In the median case: ") {
 		t.Errorf("%s, %s: %s", w.Word, w.Reason.Code, w.Reason.Text)
 	}
+	// Where a better reading would bring the word, that reading is asked for, and the other case is said with it.
+	read := s.Near.Antennas[1].Position.AsLeft
+	if read == nil {
+		t.Fatal("the sheet has no position of B as left to make doubtful")
+	}
+	was := read[0].UMM
+	read[0].UMM = 6
+	for i := range s.Limits {
+		switch s.Limits[i].Name {
+		case sheet.EffectiveStreams:
+			s.Limits[i].Value = *outcome(t, v, sheet.EffectiveStreams).Value - 0.02
+		case sheet.PositionDeviation:
+			s.Limits[i].Value = 7
+		}
+	}
+	w := judged(t, s)
+	if w.Word != verdict.MeasureAgain || w.Reason.Code != verdict.Doubt || w.Deciding == nil || w.Deciding.UNeeded == nil || !strings.Contains(w.Reason.Text, " spreads it would be no-go.") {
+		t.Errorf("%s, %s: %s", w.Word, w.Reason.Code, w.Reason.Text)
+	}
+	read[0].UMM = was
 	for i := range s.Limits {
 		if s.Limits[i].Name == sheet.EffectiveStreams {
 			s.Limits[i].Value = 1.2
+		}
+		if s.Limits[i].Name == sheet.PositionDeviation {
+			s.Limits[i].Value = 5
 		}
 		if s.Limits[i].Name == sheet.EnvelopeCorr {
 			s.Limits[i].Value = 0.99

@@ -136,6 +136,12 @@ func Judge(s *sheet.Sheet) (*Verdict, *codec.Problem) {
 	v.Reason = j.reason(v, b, o)
 	if v.Reason.Code != MissingReading && len(v.NotJudged) == 0 {
 		if other, which := j.otherCase(b, wordOf(o.joint)); other != "" {
+			// Where a better reading would bring the word, it comes first: whoever is on the mast can take it, and
+			// the median case asks for it whatever the other cases say.
+			if v.Deciding != nil && v.Deciding.UNeeded != nil {
+				v.Reason.Text += " With " + which + " spreads it would be " + other + "."
+				return v, nil
+			}
 			median := v.Reason.Text
 			if v.Reason.Code == Doubt {
 				median = "In the median case: " + median

@@ -220,7 +220,8 @@ func TestFastFunctions(t *testing.T) {
 			t.Fatalf("arcsine %v", d)
 		}
 		a, b := rapid.Float64Range(-1, 1).Draw(t, "a"), rapid.Float64Range(-1, 1).Draw(t, "b")
-		if d := math.Remainder(arctangent2(a, b)-math.Atan2(a, b), 2*math.Pi); math.Abs(d) > 3e-8 {
+		// The angle of no vector at all is anything: ours is 0, the library's hangs on the signs of the zeros.
+		if d := math.Remainder(arctangent2(a, b)-math.Atan2(a, b), 2*math.Pi); math.Abs(d) > 3e-8 && (a != 0 || b != 0) {
 			t.Fatalf("arctangent %v", d)
 		}
 		db := rapid.Float64Range(0, 100).Draw(t, "db")
@@ -231,7 +232,7 @@ func TestFastFunctions(t *testing.T) {
 			t.Fatalf("attenuation %v", d)
 		}
 	})
-	if arctangent2(0, 0) != 0 || ofAttenuation(0) != 1 {
+	if arctangent2(0, 0) != 0 || arctangent2(0, math.Copysign(0, -1)) != 0 || ofAttenuation(0) != 1 {
 		t.Error("ends")
 	}
 }

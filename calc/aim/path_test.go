@@ -3,10 +3,12 @@ package aim
 import (
 	"math"
 	"testing"
+
+	"crossplumb/testdata/published"
 )
 
 func TestFreeSpaceLossAgainstP525(t *testing.T) {
-	for _, row := range table(t, "itu_p525_free_space_loss.csv") {
+	for _, row := range published.Table(t, "itu_p525_free_space_loss.csv") {
 		f, d := number(t, row, "f_ghz"), number(t, row, "d_km")
 		got := FreeSpaceLoss(1000*d, LightSpeed/(1e9*f))
 		near(t, "exact", got, number(t, row, "Lbf_db_exact_20log10_4pi_d_over_lambda"), 0.6e-6)
@@ -17,7 +19,7 @@ func TestFreeSpaceLossAgainstP525(t *testing.T) {
 }
 
 func TestFresnelAndBulgeAgainstP526(t *testing.T) {
-	for _, row := range table(t, "itu_p526_fresnel_radius_earth_bulge.csv") {
+	for _, row := range published.Table(t, "itu_p526_fresnel_radius_earth_bulge.csv") {
 		d1, d2 := 1000*number(t, row, "d1_km"), 1000*number(t, row, "d2_km")
 		wavelength := LightSpeed / (1e9 * number(t, row, "f_ghz"))
 		const printed = 0.51e-5
@@ -31,7 +33,7 @@ func TestFresnelAndBulgeAgainstP526(t *testing.T) {
 
 // The validation files of P.1812 use the constant 92.4 and the slant path.
 func TestPathAgainstP1812(t *testing.T) {
-	for _, row := range table(t, "itu_p1812_free_space_and_effective_radius.csv") {
+	for _, row := range published.Table(t, "itu_p1812_free_space_and_effective_radius.csv") {
 		p := Path{Distance: 1000 * number(t, row, "great_circle_distance_km"), NearHeight: number(t, row, "tx_height_masl_m"), FarHeight: number(t, row, "rx_height_masl_m")}
 		f := number(t, row, "f_GHz")
 		// 92.4 is this much below the exact constant 20 log(4π·10¹²/c).
@@ -44,7 +46,7 @@ func TestPathAgainstP1812(t *testing.T) {
 // J(ν) stands for the Fresnel integral, here with 30 digits (mpmath 1.3.0). Its
 // own remainder over −0.7 … 10 is 0.123 dB at ν = 4.6.
 func TestKnifeEdgeAgainstFresnelIntegral(t *testing.T) {
-	for _, row := range table(t, "knife_edge_fresnel_integral.csv") {
+	for _, row := range published.Table(t, "knife_edge_fresnel_integral.csv") {
 		v, want := number(t, row, "nu"), number(t, row, "J_exact_fresnel_integral_dB")
 		if v < -0.78 {
 			near(t, "no loss", KnifeEdge(v), 0, 0)

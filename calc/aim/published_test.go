@@ -1,38 +1,9 @@
 package aim
 
 import (
-	"encoding/csv"
-	"os"
-	"path/filepath"
 	"strconv"
 	"testing"
 )
-
-// table reads a published table and returns its rows by column name.
-func table(t testing.TB, name string) []map[string]string {
-	t.Helper()
-	f, err := os.Open(filepath.Join("..", "..", "testdata", "published", name))
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer f.Close()
-	all, err := csv.NewReader(f).ReadAll()
-	if err != nil {
-		t.Fatal(err)
-	}
-	rows := make([]map[string]string, 0, len(all))
-	for _, line := range all[1:] {
-		row := map[string]string{}
-		for i, name := range all[0] {
-			row[name] = line[i]
-		}
-		rows = append(rows, row)
-	}
-	if len(rows) == 0 {
-		t.Fatalf("%s holds no rows", name)
-	}
-	return rows
-}
 
 func number(t testing.TB, row map[string]string, column string) float64 {
 	t.Helper()

@@ -3,13 +3,15 @@ package aim
 import (
 	"math"
 	"testing"
+
+	"crossplumb/testdata/published"
 )
 
 // Every intermediate value of the report's worked example, each to its last
 // printed digit.
 func TestSunAgainstWorkedExample(t *testing.T) {
 	want := map[string]float64{}
-	for _, row := range table(t, "solar_nrel_spa_worked_example.csv") {
+	for _, row := range published.Table(t, "solar_nrel_spa_worked_example.csv") {
 		if row["unit"] != "" {
 			want[row["quantity"]] = number(t, row, "published_value")
 		}
@@ -58,7 +60,7 @@ func TestSunAgainstWorkedExample(t *testing.T) {
 // where a small way across the sky is a large azimuth.
 func TestSunAgainstAstropy(t *testing.T) {
 	worst := 0.0
-	for _, row := range table(t, "solar_azel.csv") {
+	for _, row := range published.Table(t, "solar_azel.csv") {
 		when, ok := ParseTime(row["utc"])
 		if !ok {
 			t.Fatalf("time %s", row["utc"])

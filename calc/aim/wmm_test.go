@@ -7,6 +7,8 @@ import (
 	"strconv"
 	"strings"
 	"testing"
+
+	"crossplumb/testdata/published"
 )
 
 func TestTermsAreThePublishedOnes(t *testing.T) {
@@ -42,7 +44,7 @@ func TestTermsAreThePublishedOnes(t *testing.T) {
 // the last digit or two; their X (and with it H and F) is up to 6e-4 nT off the
 // exact sum, which TestMagneticAgainstLongArithmetic shows to be theirs.
 func TestMagneticAgainstOfficialTestValues(t *testing.T) {
-	for _, row := range table(t, "wmm2025_testvalues.csv") {
+	for _, row := range published.Table(t, "wmm2025_testvalues.csv") {
 		p := at(number(t, row, "lat_deg"), number(t, row, "lon_deg_east"), 1000*number(t, row, "height_km_wgs84"))
 		m := Magnetic(p, number(t, row, "decimal_year"))
 		const printed, theirX = 3e-6, 6e-4
@@ -63,7 +65,7 @@ func TestMagneticAgainstOfficialTestValues(t *testing.T) {
 // Rows 6, 31 and 50 of the official table, summed with 40 digits (mpmath 1.3.0,
 // Legendre functions as explicit polynomials, their slope by differences).
 func TestMagneticAgainstLongArithmetic(t *testing.T) {
-	rows := table(t, "wmm2025_testvalues.csv")
+	rows := published.Table(t, "wmm2025_testvalues.csv")
 	for _, want := range []struct {
 		row  int
 		x, z float64
@@ -81,7 +83,7 @@ func TestMagneticAgainstLongArithmetic(t *testing.T) {
 }
 
 func TestMagneticAgainstReportTable(t *testing.T) {
-	for _, row := range table(t, "wmm2025_report_table.csv") {
+	for _, row := range published.Table(t, "wmm2025_report_table.csv") {
 		p := at(number(t, row, "lat_deg"), number(t, row, "lon_deg_east"), 1000*number(t, row, "height_km_wgs84"))
 		m := Magnetic(p, number(t, row, "decimal_year"))
 		const nt, deg = 0.05 + 1e-9, 0.005 + 1e-9

@@ -1,41 +1,17 @@
 package antenna
 
 import (
-	"encoding/csv"
 	"math"
 	"math/cmplx"
-	"os"
-	"path/filepath"
 	"strconv"
 	"testing"
 
 	"pgregory.net/rapid"
+
+	"crossplumb/testdata/published"
 )
 
 const degree = math.Pi / 180
-
-// table reads a published table as rows by column name.
-func table(t testing.TB, name string) []map[string]string {
-	t.Helper()
-	f, err := os.Open(filepath.Join("..", "..", "testdata", "published", name))
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer f.Close()
-	all, err := csv.NewReader(f).ReadAll()
-	if err != nil {
-		t.Fatal(err)
-	}
-	var rows []map[string]string
-	for _, r := range all[1:] {
-		m := map[string]string{}
-		for i, h := range all[0] {
-			m[h] = r[i]
-		}
-		rows = append(rows, m)
-	}
-	return rows
-}
 
 func number(t testing.TB, s string) float64 {
 	t.Helper()
@@ -49,7 +25,7 @@ func number(t testing.TB, s string) float64 {
 // element is the element of TR 38.901 V16.1.0 with the figures read from its table 7.3-1.
 func element(t testing.TB) (Pattern, float64) {
 	value := map[string]float64{}
-	for _, r := range table(t, "tr38901_table_7_3_1_antenna_element.csv") {
+	for _, r := range published.Table(t, "tr38901_table_7_3_1_antenna_element.csv") {
 		if x, err := strconv.ParseFloat(r["value"], 64); err == nil {
 			value[r["symbol"]] = x
 		}
@@ -68,7 +44,7 @@ func TestPanelIsTheElementOfTR38901(t *testing.T) {
 	if err := p.Check(); err != nil || gain != 8 {
 		t.Fatal(err, gain)
 	}
-	rows := table(t, "tr38901_antenna_element_check_values.csv")
+	rows := published.Table(t, "tr38901_antenna_element_check_values.csv")
 	if len(rows) < 150 {
 		t.Fatalf("%d rows", len(rows))
 	}
@@ -96,7 +72,7 @@ func TestPanelIsTheElementOfTR38901(t *testing.T) {
 
 func TestMutualImpedanceAgainstTheClosedForm(t *testing.T) {
 	const half = 0.5e-4 // four printed decimals
-	rows := table(t, "mutual_impedance_half_wave_dipoles.csv")
+	rows := published.Table(t, "mutual_impedance_half_wave_dipoles.csv")
 	if len(rows) != 14 {
 		t.Fatalf("%d rows", len(rows))
 	}

@@ -8,6 +8,8 @@ import (
 	"pgregory.net/rapid"
 
 	"crossplumb/calc/scatter"
+
+	"crossplumb/testdata/published"
 )
 
 var scenarios = map[string]scatter.Scenario{
@@ -18,7 +20,7 @@ var scenarios = map[string]scatter.Scenario{
 // and office columns, at carriers below, at and above each floor. Outdoor to indoor is not offered.
 func TestClassesAreTable7_5_6(t *testing.T) {
 	seen := 0
-	for _, r := range rows(t, "tr38901_table_7_5_6_angular_parameters.csv") {
+	for _, r := range published.Table(t, "tr38901_table_7_5_6_angular_parameters.csv") {
 		if r["spec_version"] != "16.1.0" {
 			t.Fatalf("edition %s", r["spec_version"])
 		}
@@ -74,7 +76,7 @@ func TestClassesAreTable7_5_6(t *testing.T) {
 // TestZenithSpreadOfDeparture: COMPUTED from tables 7.5-7 to 7.5-10, six decimals printed.
 func TestZenithSpreadOfDeparture(t *testing.T) {
 	const half = 0.5e-6 * 1.001
-	all := rows(t, "tr38901_zsd_check_values.csv")
+	all := published.Table(t, "tr38901_zsd_check_values.csv")
 	if len(all) < 50 {
 		t.Fatalf("%d rows", len(all))
 	}
@@ -102,7 +104,7 @@ func TestZenithSpreadOfDeparture(t *testing.T) {
 // TestZenithTablesAsPrinted: PUBLISHED. The σ column and the office rows, which the worked values leave out, and the
 // formulas' texts, so that a table of another edition would not pass for this one.
 func TestZenithTablesAsPrinted(t *testing.T) {
-	for _, r := range rows(t, "tr38901_zsd_tables_7_5_7_to_7_5_10.csv") {
+	for _, r := range published.Table(t, "tr38901_zsd_tables_7_5_7_to_7_5_10.csv") {
 		if r["condition"] == "O2I" {
 			continue
 		}

@@ -1,12 +1,9 @@
 package scatter_test
 
 import (
-	"encoding/csv"
 	"fmt"
 	"math"
 	"math/cmplx"
-	"os"
-	"path/filepath"
 	"strconv"
 	"testing"
 
@@ -14,32 +11,11 @@ import (
 	"pgregory.net/rapid"
 
 	"crossplumb/calc/scatter"
+
+	"crossplumb/testdata/published"
 )
 
 const degree = math.Pi / 180
-
-// rows reads a published table; testdata/published/SOURCES.md says where each is from.
-func rows(t testing.TB, name string) []map[string]string {
-	t.Helper()
-	f, err := os.Open(filepath.Join("..", "..", "testdata", "published", name))
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer f.Close()
-	all, err := csv.NewReader(f).ReadAll()
-	if err != nil {
-		t.Fatal(err)
-	}
-	var out []map[string]string
-	for _, line := range all[1:] {
-		m := map[string]string{}
-		for i, cell := range line {
-			m[all[0][i]] = cell
-		}
-		out = append(out, m)
-	}
-	return out
-}
 
 func number(t testing.TB, s string) float64 {
 	t.Helper()
@@ -70,12 +46,12 @@ func TestCorrelationAgainstQuadratureTables(t *testing.T) {
 		"uniform2d": scatter.SpectrumUniform2D, "uniform3d": scatter.SpectrumUniform3D, "laplacian": scatter.SpectrumLaplacian,
 		"gaussian": scatter.SpectrumGaussian, "vonmises": scatter.SpectrumVonMises, "von_mises": scatter.SpectrumVonMises, "uniform": scatter.SpectrumSector,
 	}
-	for _, r := range rows(t, "spatial_correlation_more.csv") {
+	for _, r := range published.Table(t, "spatial_correlation_more.csv") {
 		s := scatter.Spectrum{Kind: kinds[r["spectrum"]], SpreadRad: number(t, r["rms_spread_deg"]) * degree, Kappa: number(t, r["kappa"])}
 		want := complex(number(t, r["rho_re"]), number(t, r["rho_im"]))
 		check(r["spectrum"], s, number(t, r["spacing_wavelengths"]), number(t, r["off_broadside_deg"]), want, 2e-11)
 	}
-	for _, r := range rows(t, "spatial_correlation_pas.csv") {
+	for _, r := range published.Table(t, "spatial_correlation_pas.csv") {
 		p := number(t, r["spread_parameter_deg_or_kappa"])
 		s := scatter.Spectrum{Kind: kinds[r["power_azimuth_spectrum"]], SpreadRad: p * degree, Kappa: p}
 		want := complex(number(t, r["rho_real"]), number(t, r["rho_imag"]))

@@ -1,36 +1,12 @@
 package stream
 
 import (
-	"encoding/csv"
 	"math"
-	"os"
-	"path/filepath"
 	"strconv"
 	"testing"
-)
 
-// table reads a published table; testdata/published/SOURCES.md says where each is from.
-func table(t testing.TB, name string) []map[string]string {
-	t.Helper()
-	f, err := os.Open(filepath.Join("..", "..", "testdata", "published", name))
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer f.Close()
-	all, err := csv.NewReader(f).ReadAll()
-	if err != nil {
-		t.Fatal(err)
-	}
-	var rows []map[string]string
-	for _, r := range all[1:] {
-		m := map[string]string{}
-		for i, h := range all[0] {
-			m[h] = r[i]
-		}
-		rows = append(rows, m)
-	}
-	return rows
-}
+	"crossplumb/testdata/published"
+)
 
 func number(t testing.TB, s string) float64 {
 	t.Helper()
@@ -54,7 +30,7 @@ func pair(rho complex128) []complex128 { return []complex128{1, rho, conj(rho), 
 // TestErgodicCapacityOfIndependentRayleigh: COMPUTED from theorem 2 of Telatar 1999. The promise is a standard error of at
 // most 0.01 bit/s/Hz and an answer within 0.02 of exact; four standard errors must hold it as well.
 func TestErgodicCapacityOfIndependentRayleigh(t *testing.T) {
-	rows := table(t, "mimo_ergodic_capacity_iid_rayleigh.csv")
+	rows := published.Table(t, "mimo_ergodic_capacity_iid_rayleigh.csv")
 	if len(rows) != 36 {
 		t.Fatalf("%d rows", len(rows))
 	}
@@ -83,7 +59,7 @@ func TestErgodicCapacityOfIndependentRayleigh(t *testing.T) {
 
 // TestKronecker: COMPUTED with numpy, 400,000 draws; both errors count.
 func TestKronecker(t *testing.T) {
-	rows := table(t, "mimo_kronecker_2x2.csv")
+	rows := published.Table(t, "mimo_kronecker_2x2.csv")
 	if len(rows) != 12 {
 		t.Fatalf("%d rows", len(rows))
 	}
@@ -110,8 +86,8 @@ func TestKronecker(t *testing.T) {
 // is f stands off by √(p(1−p)/n)/f. The spread of the rate is about 0.9 to 1.8 bit/s/Hz here (a Gaussian tail has
 // f = 0.027/σ), with n = 16,384: 0.05 at most, taken fourfold with the table's own half digit.
 func TestOutage(t *testing.T) {
-	published := map[float64]float64{1.2: 0.05, 7: 0.5, 19: 0.5, 88: 0.5}
-	for _, r := range table(t, "mimo_outage_foschini_gans_1998.csv") {
+	printed := map[float64]float64{1.2: 0.05, 7: 0.5, 19: 0.5, 88: 0.5}
+	for _, r := range published.Table(t, "mimo_outage_foschini_gans_1998.csv") {
 		n := int(number(t, r["n_tx"]))
 		if testing.Short() && n > 4 {
 			continue
@@ -121,7 +97,7 @@ func TestOutage(t *testing.T) {
 			t.Fatal(err)
 		}
 		want := number(t, r["published_99pct_capacity_bps_per_hz_approx"])
-		within, ok := published[want]
+		within, ok := printed[want]
 		if !ok {
 			t.Fatalf("unknown row %v", r)
 		}
@@ -156,7 +132,7 @@ func TestCorrelationMatricesOf3GPP(t *testing.T) {
 		return r
 	}
 	levels := map[string][2]float64{}
-	for _, r := range table(t, "3gpp_mimo_correlation_levels.csv") {
+	for _, r := range published.Table(t, "3gpp_mimo_correlation_levels.csv") {
 		levels[r["level"]] = [2]float64{number(t, r["alpha_base_station"]), number(t, r["beta_user_equipment"])}
 	}
 	if len(levels) != 3 || levels["low"] != [2]float64{} {
@@ -168,7 +144,7 @@ func TestCorrelationMatricesOf3GPP(t *testing.T) {
 	}
 	cov := map[key][]complex128{}
 	checked, first := 0, 0
-	for _, r := range table(t, "3gpp_mimo_correlation_matrices.csv") {
+	for _, r := range published.Table(t, "3gpp_mimo_correlation_matrices.csv") {
 		k := key{r["level"], int(number(t, r["n_base_station_antennas"])), int(number(t, r["n_user_equipment_antennas"]))}
 		if got := [2]float64{number(t, r["alpha"]), number(t, r["beta"])}; got != levels[k.level] {
 			t.Fatalf("%v: α β %v", k, got)
@@ -223,7 +199,7 @@ func TestCorrelationMatricesOf3GPP(t *testing.T) {
 // which is where the table's own last digits at 30 km come from. The table's entries have unit modulus, ours fall with
 // distance: by ε = (N−1)²d²/2D² at most, 8.7 ε dB, which shows at 100 m only.
 func TestLineOfSightSpacing(t *testing.T) {
-	rows := table(t, "los_mimo_optimal_spacing.csv")
+	rows := published.Table(t, "los_mimo_optimal_spacing.csv")
 	if len(rows) < 60 {
 		t.Fatalf("%d rows", len(rows))
 	}

@@ -1,14 +1,14 @@
 package wire
 
 import (
-	"encoding/csv"
 	"encoding/json"
 	"fmt"
 	"math"
-	"os"
 	"strconv"
 	"strings"
 	"testing"
+
+	"crossplumb/testdata/published"
 )
 
 // ask runs an operation that must answer and returns the answer's fields.
@@ -41,28 +41,6 @@ func within(t testing.TB, what string, got, want, tolerance float64) {
 	}
 }
 
-func publishedTable(t testing.TB, name string) []map[string]string {
-	t.Helper()
-	f, err := os.Open("../../testdata/published/" + name)
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer f.Close()
-	all, err := csv.NewReader(f).ReadAll()
-	if err != nil || len(all) < 2 {
-		t.Fatalf("%s: %v", name, err)
-	}
-	var rows []map[string]string
-	for _, line := range all[1:] {
-		row := map[string]string{}
-		for i, name := range all[0] {
-			row[name] = line[i]
-		}
-		rows = append(rows, row)
-	}
-	return rows
-}
-
 func cell(t testing.TB, row map[string]string, name string) float64 {
 	t.Helper()
 	x, err := strconv.ParseFloat(row[name], 64)
@@ -74,7 +52,7 @@ func cell(t testing.TB, row map[string]string, name string) float64 {
 
 // The tables again, through the door, at the tolerances that the design asks for.
 func TestAimTargetAgainstTables(t *testing.T) {
-	for _, r := range publishedTable(t, "enu.csv") {
+	for _, r := range published.Table(t, "enu.csv") {
 		a := ask(t, "aim.target", fmt.Sprintf(`{"from":{"lat_deg":%s,"lon_deg":%s,"height_m":%s,"u_m":5},"to":{"lat_deg":%s,"lon_deg":%s,"height_m":%s,"u_m":5},"height_datum":"WGS 84 ellipsoid","k_factor":1}`,
 			r["observer_lat_deg"], r["observer_lon_deg"], r["observer_h_m"], r["target_lat_deg"], r["target_lon_deg"], r["target_h_m"]))
 		// 1e-6°, and what the table's metres, rounded to 0.1 mm, leave open.
@@ -85,7 +63,7 @@ func TestAimTargetAgainstTables(t *testing.T) {
 		// At k = 1 the ray is straight.
 		within(t, "no air", figure(t, a, "elevation_deg"), figure(t, a, "geometric_elevation_deg"), 0)
 	}
-	for _, r := range publishedTable(t, "geodesic.csv") {
+	for _, r := range published.Table(t, "geodesic.csv") {
 		a := ask(t, "aim.target", fmt.Sprintf(`{"from":{"lat_deg":%s,"lon_deg":%s,"height_m":0},"to":{"lat_deg":%s,"lon_deg":%s,"height_m":0},"height_datum":"ellipsoid"}`,
 			r["lat1_deg"], r["lon1_deg"], r["lat2_deg"], r["lon2_deg"]))
 		within(t, "geodesic bearing", math.Remainder(figure(t, a, "geodesic_bearing_deg")-cell(t, r, "azi1_deg"), 360), 0, 1e-6)
@@ -97,7 +75,7 @@ func TestAimTargetAgainstTables(t *testing.T) {
 
 func TestAimCompassAgainstTables(t *testing.T) {
 	for _, name := range []string{"wmm2025_testvalues.csv", "wmm2025_report_table.csv"} {
-		for _, r := range publishedTable(t, name) {
+		for _, r := range published.Table(t, name) {
 			a := ask(t, "aim.compass", fmt.Sprintf(`{"lat_deg":%s,"lon_deg":%s,"height_m":%g,"decimal_year":%s}`, r["lat_deg"], r["lon_deg_east"], 1000*cell(t, r, "height_km_wgs84"), r["decimal_year"]))
 			within(t, "declination", figure(t, a, "declination_deg"), cell(t, r, "declination_deg"), 0.005+1e-9)
 			within(t, "inclination", figure(t, a, "inclination_deg"), cell(t, r, "inclination_deg"), 0.005+1e-9)
@@ -136,7 +114,7 @@ func TestAimCompassSaysWhenTheModelEnds(t *testing.T) {
 }
 
 func TestAimSunAgainstTable(t *testing.T) {
-	for _, r := range publishedTable(t, "solar_azel.csv") {
+	for _, r := range published.Table(t, "solar_azel.csv") {
 		a := ask(t, "aim.sun", fmt.Sprintf(`{"lat_deg":%s,"lon_deg":%s,"height_m":%s,"time":"%s"}`, r["lat_deg"], r["lon_deg_east"], r["height_m_ellipsoid"], r["utc"]))
 		e := cell(t, r, "elevation_geometric_deg")
 		tolerance := 0.01

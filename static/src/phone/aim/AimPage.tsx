@@ -21,12 +21,7 @@ import { Gone } from '../Gone.tsx';
 import { Page } from '../Page.tsx';
 import { hrefOf } from '../route.ts';
 import { Visit } from '../Visit.tsx';
-import { ask, type AimOpen, useAim, useTarget } from './useAim.ts';
-
-interface Address {
-  job: string;
-  mount: string;
-}
+import { type Address, ask, type AimOpen, useAim, useTarget } from './useAim.ts';
 
 /** The sun moves a quarter of a degree a minute, at most one: asked again this often, what is shown is right to 0.1°. */
 const sunEveryMs = 5_000;

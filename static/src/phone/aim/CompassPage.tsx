@@ -21,12 +21,7 @@ import { Page } from '../Page.tsx';
 import { go, hrefOf } from '../route.ts';
 import { methodName } from '../sentence.ts';
 import { Field, type Form, numberIn, showFirst, told, useForm } from './form.tsx';
-import { ask, type AimOpen, useAim, useTarget } from './useAim.ts';
-
-interface Address {
-  job: string;
-  mount: string;
-}
+import { type Address, ask, type AimOpen, useAim, useTarget } from './useAim.ts';
 
 const fields = ['first', 'second', 'third'] as const;
 

@@ -14,12 +14,7 @@ import { Page } from '../Page.tsx';
 import { hrefOf } from '../route.ts';
 import { Visit } from '../Visit.tsx';
 import { PowerControl } from './PeakPage.tsx';
-import { ask, type AimOpen, useAim, usePath, useTarget } from './useAim.ts';
-
-interface Address {
-  job: string;
-  mount: string;
-}
+import { type Address, ask, type AimOpen, useAim, usePath, useTarget } from './useAim.ts';
 
 export function FiguresPage(props: Address) {
   const open = useAim(props.job, props.mount);

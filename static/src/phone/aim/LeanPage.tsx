@@ -17,12 +17,7 @@ import { Gone } from '../Gone.tsx';
 import { Page } from '../Page.tsx';
 import { hrefOf } from '../route.ts';
 import { Field, type Form, numberIn, showFirst, told, useForm } from './form.tsx';
-import { ask, type AimOpen, useAim } from './useAim.ts';
-
-interface Address {
-  job: string;
-  mount: string;
-}
+import { type Address, ask, type AimOpen, useAim } from './useAim.ts';
 
 export function LeanPage(props: Address) {
   const open = useAim(props.job, props.mount);

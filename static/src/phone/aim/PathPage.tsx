@@ -15,12 +15,7 @@ import { Gone } from '../Gone.tsx';
 import { Page } from '../Page.tsx';
 import { hrefOf } from '../route.ts';
 import { errorIn, Field, type Form, numberIn, showFirst, told, useForm } from './form.tsx';
-import { ask, type AimOpen, useAim, usePath, useTarget } from './useAim.ts';
-
-interface Address {
-  job: string;
-  mount: string;
-}
+import { type Address, ask, type AimOpen, useAim, usePath, useTarget } from './useAim.ts';
 
 export function PathPage(props: Address) {
   const open = useAim(props.job, props.mount);

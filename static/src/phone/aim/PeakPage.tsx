@@ -22,12 +22,7 @@ import { Page } from '../Page.tsx';
 import { hrefOf } from '../route.ts';
 import { Field, type Form, numberIn, showFirst, told, useForm } from './form.tsx';
 import { keptPeak } from './AimPage.tsx';
-import { ask, type AimOpen, useAim, usePath, useTarget } from './useAim.ts';
-
-interface Address {
-  job: string;
-  mount: string;
-}
+import { type Address, ask, type AimOpen, useAim, usePath, useTarget } from './useAim.ts';
 
 export function PeakPage(props: Address) {
   const open = useAim(props.job, props.mount);

@@ -9,6 +9,12 @@ import { useJob } from '../useJob.ts';
 
 export const ask: Ask = (op, input) => reckon(op, input);
 
+/** Which mount of which job a page is about. */
+export interface Address {
+  job: string;
+  mount: string;
+}
+
 export interface AimOpen {
   job: PhoneJob;
   log: LoggedEntry[];
